@@ -1,0 +1,1 @@
+"""Pure numerics: units, balances, verdicts."""

@@ -1,0 +1,1 @@
+"""Laboratory files into domain values, with every bad row named."""

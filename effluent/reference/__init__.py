@@ -1,0 +1,1 @@
+"""Published tables, shipped as reference and never as law."""
