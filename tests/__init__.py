@@ -1,0 +1,1 @@
+"""The checks of the project; ``python -m tests`` runs them all."""
