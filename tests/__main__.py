@@ -1,7 +1,7 @@
 """The one check command: ``python -m tests``.
 
-Format, lint, types, layers, then the tests in random order on two processes with branch coverage. The first step that
-fails ends the run with its exit status; a run that reaches the tests closes on pytest's own summary line.
+Format, lint, types, layers, then the tests in random order on two processes with branch coverage. The first
+step that fails ends the run with its exit status; a run that reaches the tests closes on pytest's summary.
 """
 
 from __future__ import annotations

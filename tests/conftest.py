@@ -1,4 +1,4 @@
-"""What every test gets: a clean environment, a place for a ledger, and a failure when it leaks a connection."""
+"""What every test gets: a clean environment, a place for a ledger, a failure when it leaks a connection."""
 
 from __future__ import annotations
 
