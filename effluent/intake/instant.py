@@ -1,0 +1,81 @@
+"""When a result was analysed: local date and time as written, to an instant in UTC."""
+
+from __future__ import annotations
+
+import re
+from dataclasses import dataclass
+from datetime import UTC, datetime
+from zoneinfo import ZoneInfo
+
+from effluent.errors import ValueRefused
+
+__all__ = ["Clock"]
+
+_ISO = re.compile(
+    r"\d{4}-\d\d-\d\d(?P<time>[T ]\d\d:\d\d(:\d\d([.,]\d{1,6})?)? ?(Z|[+-]\d\d:?\d\d)?)?", re.ASCII
+)
+_TIME_DIRECTIVES = ("%H", "%I", "%X", "%c", "%T", "%R")
+_OLDEST_YEAR = 1950
+_NEWEST_YEAR = 2199
+
+
+@dataclass(frozen=True)
+class Clock:
+    """Reads local times of one zone, written in one format or as ISO 8601.
+
+    A date without a time is read as 23:59 of that local day: a holding time then counts in full. A time
+    that the clocks showed twice is the later one; a time that they skipped is refused. An offset that is
+    written counts more than the zone.
+    """
+
+    zone: ZoneInfo
+    date_format: str = ""
+
+    def read(self, text: str) -> str:
+        """Return the instant as ``YYYY-MM-DDTHH:MM:SS.ffffffZ``.
+
+        Raises
+        ------
+        ValueRefused
+            If the text is no date in the format declared or as ISO 8601, lies outside 1950 to 2199, or
+            names a local time that the clocks skipped.
+        """
+        written, timed = self._parse(text)
+        if not timed:
+            written = written.replace(hour=23, minute=59)
+        if not _OLDEST_YEAR <= written.year <= _NEWEST_YEAR:
+            raise ValueRefused("date", text, f"its year is not one from {_OLDEST_YEAR} to {_NEWEST_YEAR}")
+        instant = self._in_zone(written, text) if written.tzinfo is None else written.astimezone(UTC)
+        return instant.replace(tzinfo=None).isoformat(timespec="microseconds") + "Z"
+
+    def _parse(self, text: str) -> tuple[datetime, bool]:
+        """Return the date and time as written, and whether a time was written."""
+        if self.date_format:
+            try:
+                read = datetime.strptime(text, self.date_format)  # noqa: DTZ007 - the zone comes next
+            except ValueError:
+                return self._iso(text)
+            return read, any(mark in self.date_format for mark in _TIME_DIRECTIVES)
+        return self._iso(text)
+
+    def _iso(self, text: str) -> tuple[datetime, bool]:
+        match = _ISO.fullmatch(text)
+        try:
+            if match is not None:
+                return datetime.fromisoformat(text.replace(" Z", "Z").replace(" +", "+")), bool(match["time"])
+        except ValueError:
+            pass
+        wanted = f"the format {self.date_format} or " if self.date_format else ""
+        remedy = f"write it in {wanted}ISO 8601, as in 2026-03-05 14:30"
+        raise ValueRefused("date", text, remedy if self.date_format else remedy + ", or declare date_format")
+
+    def _in_zone(self, written: datetime, text: str) -> datetime:
+        local = written.replace(tzinfo=self.zone, fold=1)
+        instant = local.astimezone(UTC)
+        if instant.astimezone(self.zone).replace(tzinfo=None) != written:
+            raise ValueRefused(
+                "date",
+                text,
+                f"clocks in {self.zone} skipped that time; write it with its offset, as in +01:00",
+            )
+        return instant
