@@ -106,7 +106,7 @@ def measure(chosen: Work, *, rows: int, turns: int) -> Figure:
 def run(side: Side) -> tuple[float, float]:
     """Return the seconds and the peak MiB of one turn.
 
-    Linux counts the size of the caller as the least peak of a new process, so the bench imports nothing large.
+    Linux counts the size of the caller as the least peak of a new process, so the bench stays small.
     """
     if side.before:
         side.before()
