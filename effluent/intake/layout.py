@@ -40,7 +40,6 @@ FIELDS: Mapping[str, str] = MappingProxyType(
 )
 REQUIRED = ("sample", "analyte", "value", "unit")
 _WIDE_FIELDS = tuple(name for name in FIELDS if name not in {"sample", "value"})
-_NO_STRINGS: Mapping[str, str] = MappingProxyType({})
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -54,8 +53,8 @@ class Layout:
     """
 
     plain: bool = False
-    columns: Mapping[str, str] = field(default=_NO_STRINGS)
-    constants: Mapping[str, str] = field(default=_NO_STRINGS)
+    columns: Mapping[str, str] = field(default_factory=dict)
+    constants: Mapping[str, str] = field(default_factory=dict)
     skip: Mapping[str, frozenset[str]] = field(default_factory=dict)
     wide: Mapping[str, Mapping[str, str]] = field(default_factory=dict)
     date_format: str = ""

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import codecs
+import contextlib
 import csv
 from collections.abc import Iterator
 from dataclasses import dataclass
@@ -99,12 +100,12 @@ def detect_delimiter(path: Path, encoding: str, *, skip_rows: int = 0) -> str:
 
 def _score(path: Path, encoding: str, delimiter: str, skip_rows: int) -> tuple[int, int]:
     """Return the width of the heading row and how many rows after it are as wide."""
-    with path.open(encoding=encoding, newline="") as handle:
+    widths: list[int] = []
+    with path.open(encoding=encoding, newline="") as handle, contextlib.suppress(csv.Error):
+        # What breaks the table further down is named when it is read in earnest.
         reader = csv.reader(handle, delimiter=delimiter, skipinitialspace=True)
-        try:
-            widths = [len(record) for record in islice(reader, skip_rows, skip_rows + _SAMPLE_RECORDS)]
-        except csv.Error:
-            return 0, 0
+        for record in islice(reader, skip_rows, skip_rows + _SAMPLE_RECORDS):
+            widths.append(len(record))
     return (widths[0], widths.count(widths[0])) if widths else (0, 0)
 
 

@@ -1,0 +1,200 @@
+import zipfile
+from datetime import datetime
+
+import pytest
+import xlsxwriter
+
+from effluent.errors import FileMissing, ValueRefused
+from effluent.intake.table import Table, open_table
+
+
+def rows(table: Table, size: int = 50_000) -> list[tuple[int, list[str]]]:
+    return [pair for block in table.blocks(size) for pair in zip(block.numbers, block.rows, strict=True)]
+
+
+def write(path, text, encoding="utf-8", newline=""):
+    path.write_text(text, encoding=encoding, newline=newline)
+    return path
+
+
+@pytest.fixture
+def file(tmp_path):
+    return tmp_path / "results.csv"
+
+
+@pytest.mark.parametrize("mark", [",", ";", "\t", "|"])
+def test_delimiter_is_found_from_the_heading_row(file, mark):
+    write(file, f"Sample{mark}Value\nS-1{mark}0,5\n" if mark != "," else 'Sample,Value\nS-1,"0,5"\n')
+    assert rows(open_table(file)) == [(2, ["S-1", "0,5"])]
+
+
+@pytest.mark.parametrize("encoding", ["utf-8", "utf-8-sig", "utf-16", "cp1252"])
+def test_encoding_is_found_from_the_bytes(file, encoding):
+    write(file, "Probe;Wert µg/l\nS-1;5\n", encoding)
+    assert open_table(file).headings == ("Probe", "Wert µg/l")
+
+
+def test_declared_encoding_is_used(file):
+    write(file, "Sample;Name\nS-1;Жидкость\n", "cp1251")
+    assert rows(open_table(file, encoding="cp1251")) == [(2, ["S-1", "Жидкость"])]
+
+
+def test_unknown_encoding_is_refused(file):
+    write(file, "a,b\n")
+    with pytest.raises(ValueRefused, match="name one such as utf-8"):
+        open_table(file, encoding="klingon")
+
+
+def test_declared_encoding_that_does_not_fit_is_refused(file):
+    write(file, "Probe;µ\n", "cp1252")
+    with pytest.raises(ValueRefused, match="not utf-8 text; declare its encoding"):
+        open_table(file, encoding="utf-8")
+
+
+def test_rows_are_counted_as_a_spreadsheet_counts_them(file):
+    write(file, 'a,b\n1,"two\nlines"\n\n,\n3,4\n')
+    assert rows(open_table(file)) == [(2, ["1", "two\nlines"]), (5, ["3", "4"])]
+
+
+def test_row_numbers_go_on_from_block_to_block(file):
+    write(file, "# made up\n#\na,b\n" + "".join(f"{n},x\n" for n in range(4, 54)))
+    assert all(str(number) == row[0] for number, row in rows(open_table(file, skip_rows=2), size=7))
+
+
+def test_rows_of_another_width_are_named(file):
+    write(file, "a,b\n1\n1,2\n1,2,3\n1,2,,\n")
+    (block,) = open_table(file).blocks()
+    assert [(error.row, error.value) for error in block.errors] == [(2, "1"), (4, "1 | 2 | 3")]
+    assert "it has 3 cells where the heading row has 2" in block.errors[1].reason
+    assert list(block.numbers) == [3, 5]
+
+
+def test_line_breaks_in_headings_count_as_blanks(file):
+    write(file, 'a,"b\n(mg/L)",\n1,2,\n')
+    assert open_table(file).headings == ("a", "b (mg/L)")
+
+
+def test_repeated_heading_is_refused(file):
+    write(file, "a,b,a\n1,2,3\n")
+    with pytest.raises(ValueRefused, match="heading 'a' stands twice in row 1"):
+        open_table(file)
+
+
+def test_missing_file_is_named(file):
+    with pytest.raises(FileMissing, match=r"results\.csv is not there"):
+        open_table(file)
+
+
+@pytest.mark.parametrize(
+    ("content", "reason"),
+    [
+        (b"", "it is empty"),
+        (b"a,b\n1,\0\n", "NUL"),
+        (b"one column\n1\n", "no comma, semicolon, tab or bar"),
+        (b"PK\x03\x04 cut short", "cut short or damaged"),
+        (bytes.fromhex("d0cf11e0a1b11ae1") + b"x" * 600, "password-protected"),
+        (b"a,b\n\x81\x8d,2\n", "not utf-8 or cp1252 text"),
+        (b"\xff\xfea", "not utf-16 text"),
+    ],
+)
+def test_what_is_no_table_is_refused(file, content, reason):
+    file.write_bytes(content)
+    with pytest.raises(ValueRefused, match=reason):
+        open_table(file)
+
+
+@pytest.mark.parametrize("body", ['1,"never closed\n2,3\n', '1,"two"x\n', f"1,{'9' * 200_000}\n"])
+def test_broken_quotation_and_endless_cells_are_refused_with_their_line(file, body):
+    write(file, "a,b\n" + body)
+    with pytest.raises(ValueRefused, match=r"line \d+ breaks the table"):
+        rows(open_table(file))
+
+
+def test_heading_row_beyond_the_end_is_refused(file):
+    write(file, "a,b\n1,2\n")
+    with pytest.raises(ValueRefused, match=r"heading row|heading_row|skip_rows"):
+        open_table(file, skip_rows=7)
+
+
+def test_folder_is_not_a_file(tmp_path):
+    with pytest.raises(FileMissing):
+        open_table(tmp_path)
+
+
+def test_sheet_of_a_text_file_is_refused(file):
+    write(file, "a,b\n1,2\n")
+    with pytest.raises(ValueRefused, match="has no sheets"):
+        open_table(file, sheet="Results")
+
+
+@pytest.mark.parametrize("name", ["book.xlsm", "book.xlsb", "book.xls"])
+def test_macro_and_binary_workbooks_are_refused_by_name(tmp_path, name):
+    (tmp_path / name).write_bytes(b"a,b\n1,2\n")
+    with pytest.raises(ValueRefused, match="never opened"):
+        open_table(tmp_path / name)
+
+
+def test_macro_workbook_under_another_name_is_refused(tmp_path):
+    path = tmp_path / "book.xlsx"
+    with zipfile.ZipFile(path, "w") as archive:
+        archive.writestr("xl/workbook.xml", "")
+        archive.writestr("xl/vbaProject.bin", "")
+    with pytest.raises(ValueRefused, match="macros"):
+        open_table(path)
+
+
+def test_archive_that_is_no_workbook_is_refused(tmp_path):
+    path = tmp_path / "results.csv"
+    with zipfile.ZipFile(path, "w") as archive:
+        archive.writestr("results.csv", "a,b\n1,2\n")
+    with pytest.raises(ValueRefused, match="an archive but not a workbook"):
+        open_table(path)
+
+
+def test_workbook_that_unpacks_to_an_absurd_size_is_refused(tmp_path, monkeypatch):
+    monkeypatch.setattr("effluent.intake.workbook._UNPACKED_BYTES", 100)
+    with pytest.raises(ValueRefused, match="unpacks to more than"):
+        open_table(book(tmp_path, {"Results": [["a", "b"]]}))
+
+
+def book(folder, sheets, hidden=()):
+    path = folder / "results.xlsx"
+    with xlsxwriter.Workbook(path, {"default_date_format": "dd/mm/yyyy hh:mm"}) as workbook:
+        for name, cells in sheets.items():
+            sheet = workbook.add_worksheet(name)
+            if name in hidden:
+                sheet.hide()
+            for number, row in enumerate(cells):
+                sheet.write_row(number, 0, row)
+    return path
+
+
+def test_cells_of_a_workbook_come_as_they_show(tmp_path):
+    shown = datetime.fromisoformat("2026-03-05T14:30")
+    cells = [["a", "b", "c"], [0.1 + 0.2, 5, shown], [], [1e-7, True, "<0.5"]]
+    assert rows(open_table(book(tmp_path, {"Results": cells}))) == [
+        (2, ["0.3", "5", "2026-03-05T14:30:00"]),
+        (4, ["1e-07", "TRUE", "<0.5"]),
+    ]
+
+
+def test_hidden_sheets_are_passed_over(tmp_path):
+    path = book(tmp_path, {"Results": [["a", "b"], ["1", "2"]], "Lists": [["x", "y"]]}, hidden={"Lists"})
+    assert open_table(path).headings == ("a", "b")
+
+
+def test_choice_between_sheets_is_asked_for(tmp_path):
+    path = book(tmp_path, {"Results": [["a", "b"]], "Blanks": [["x", "y"]]})
+    with pytest.raises(ValueRefused, match="2 sheets; name one of Results, Blanks"):
+        open_table(path)
+    assert open_table(path, sheet="Blanks").headings == ("x", "y")
+    with pytest.raises(ValueRefused, match="has Results, Blanks"):
+        open_table(path, sheet="Result")
+
+
+@pytest.mark.parametrize("share", [0.1, 0.5, 0.9, 0.99])
+def test_workbook_cut_short_is_refused(tmp_path, share):
+    path = book(tmp_path, {"Results": [["a", "b"], *[["1", "2"]] * 50]})
+    path.write_bytes(path.read_bytes()[: int(path.stat().st_size * share)])
+    with pytest.raises(ValueRefused, match="cut short or damaged"):
+        open_table(path)
