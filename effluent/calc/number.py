@@ -9,7 +9,7 @@ from effluent.errors import ValueRefused
 __all__ = ["decimal_text", "leading_power", "nearest"]
 
 _PLACES = 30
-_LARGEST_PLAIN = 10**40
+_LARGEST_PLAIN = Fraction(10) ** 40
 
 
 def nearest(value: Fraction) -> float:
@@ -59,7 +59,7 @@ def decimal_text(value: Fraction, *, digits: int = 10) -> str:
     Raises
     ------
     ValueRefused
-        If the number is 1e40 or larger.
+        If the number is 1e40 or larger, or below 1e-40 and not zero.
 
     Notes
     -----
@@ -74,6 +74,8 @@ def decimal_text(value: Fraction, *, digits: int = 10) -> str:
     """
     if abs(value) >= _LARGEST_PLAIN:
         raise ValueRefused("number", _short(value), "it is larger than any measured value")
+    if value and abs(value) * _LARGEST_PLAIN < 1:
+        raise ValueRefused("number", _short(value), "it is smaller than any measured value")
     places = _PLACES if 10**_PLACES % value.denominator == 0 else digits - 1 - leading_power(value)
     scaled = round(value * Fraction(10) ** places)
     if places <= 0:

@@ -15,6 +15,7 @@ _QUANTITY = re.compile(
     rf"(?P<text>{_NUMBER})\s*(?:(?:±|\+/-)\s*(?P<spread>{_NUMBER})\s*)?"
     rf"(?P<unit>[^\W\d_].*?|[%°].*?)??\s*(?:(?:±|\+/-)\s*(?P<percent>{_NUMBER})\s*%)?"
 )
+_LONGEST = 400
 _REMEDY = "write a number with a decimal point and a unit, as in '12.5 L', '60 ± 1 L' or '60 L ± 2 %'"
 
 
@@ -41,6 +42,8 @@ def exact(text: str) -> Fraction:
     >>> exact("0.11")
     Fraction(11, 100)
     """
+    if len(text) > _LONGEST:
+        raise ValueRefused("number", text[:40] + "…", f"write at most {_LONGEST} characters")
     if not re.fullmatch(_NUMBER, text):
         raise ValueRefused("number", text, "write digits with a decimal point, as in 0.11 or 1.1e-1")
     return Fraction(text)
