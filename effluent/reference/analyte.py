@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import functools
+import itertools
 import re
 import unicodedata
 from collections.abc import Iterator
@@ -163,7 +164,7 @@ def _names() -> dict[str, tuple[Analyte, ...]]:
 
 
 def _readings(words: tuple[str, ...]) -> Iterator[tuple[str, frozenset[Fraction]]]:
-    """Yield the name as it stands, then with one fraction after the other taken off either end."""
+    """Yield the name as it stands, then with one fraction after the other taken off."""
     fractions: frozenset[Fraction] = frozenset()
     while words:
         yield "".join(words), fractions
@@ -174,11 +175,14 @@ def _readings(words: tuple[str, ...]) -> Iterator[tuple[str, frozenset[Fraction]
 
 
 def _without_fraction(words: tuple[str, ...]) -> tuple[tuple[str, ...], Fraction | None]:
+    """Take one fraction off the end, the front, or the middle ("Alkalinity, total, as CaCO3")."""
     for size in (2, 1):
         if words[-size:] in _TRAILING:
             return words[:-size], _TRAILING[words[-size:]]
-        if words[:size] in _LEADING:
-            return words[size:], _LEADING[words[:size]]
+    for size, place in itertools.product((2, 1), range(len(words))):
+        part = words[place : place + size]
+        if part in _LEADING:
+            return words[:place] + words[place + size :], _LEADING[part]
     return words, None
 
 

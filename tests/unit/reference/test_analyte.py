@@ -56,6 +56,11 @@ TOTAL, RECOVERABLE, DISSOLVED, TCLP = (
         ("Phenolics, total recoverable", "phenols", None),
         ("MBAS", "surfactants", None),
         ("NH₃-N", "ammonia as n", None),
+        ("Nitrate-N", "nitrate as n", None),
+        ("Alkalinity, Total (as CaCO3)", "alkalinity", TOTAL),
+        ("Phosphorus, Total as P", "phosphorus", TOTAL),
+        ("Cyanide, Total as CN", "cyanide", TOTAL),
+        ("Total Metals", "total metals", None),
         ("pH", "ph", None),
     ],
 )
