@@ -50,6 +50,13 @@ def test_functions_take_few_arguments() -> None:
     assert too_large({where: arguments(f) for where, f in functions()}, ARGUMENTS_MOST) == []
 
 
+def test_no_bare_true_or_false_is_given_by_position() -> None:
+    positional = [(where, arg) for where, f in functions() for arg in [*f.args.posonlyargs, *f.args.args]]
+    assert [
+        where for where, arg in positional if arg.annotation and ast.unparse(arg.annotation) == "bool"
+    ] == []
+
+
 def test_blocks_nest_little() -> None:
     assert too_large({where: nesting(f) for where, f in functions()}, NESTING_MOST) == []
 
