@@ -107,8 +107,6 @@ _WHOLE = {
     "g/l": "g/L",
     "ppm": "mg/kg",
     "ppb": "ug/kg",
-    "gpd": "gal/d",
-    "gpm": "gal/min",
     "s.u.": "SU",
     "s.u": "SU",
     "std units": "SU",
@@ -119,6 +117,7 @@ _WHOLE = {
     "ph units": "SU",
     "ph unit": "SU",
 }
+_FLOWS = {"mgd": "Mgal/d", "gpd": "gal/d", "gpm": "gal/min"}
 _MEASURED = {
     "mass": "mass",
     "volume": "volume",
@@ -186,7 +185,7 @@ def _plain(written: str) -> str:
     text = unicodedata.normalize("NFKC", written).replace("\u03bc", "u").replace("\u2212", "-")
     text = re.sub(r" *([/*·]) *", r"\1", " ".join(text.split()))
     text = re.sub(r"\b(US|us|imp|Imp|imperial|fl|deg|metric|short) (?=[A-Za-z])", r"\1_", text)
-    text = re.sub(r"\b(?:MGD|mgd)\b", "Mgal/d", text)
+    text = re.sub(r"(?i)\b(?:mgd|gpd|gpm)\b", lambda word: _FLOWS[word[0].casefold()], text)
     return _WHOLE.get(text.casefold(), text)
 
 
