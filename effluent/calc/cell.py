@@ -177,8 +177,10 @@ def _number(text: str, written: str, *, decimal_comma: bool) -> str:
     if _TWO_WAYS[decimal_comma].fullmatch(text):
         raise ValueRefused("value", written, _two_ways(text, "," if decimal_comma else "."))
     if not _NUMBERS[decimal_comma].fullmatch(text):
-        if decimal_comma and "." in text:
-            raise ValueRefused("value", written, "a decimal comma was declared; write one comma and no point")
+        if decimal_comma:
+            raise ValueRefused(
+                "value", written, "a decimal comma was declared; write one comma, no decimal point"
+            )
         raise _refused(written)
     group, mark = (".", ",") if decimal_comma else (",", ".")
     number = Decimal(text.replace(group, "").replace(mark, "."))
