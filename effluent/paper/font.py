@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import unicodedata
-from functools import cache
+from functools import cache, lru_cache
 from itertools import groupby
 from pathlib import Path
 
@@ -70,6 +70,7 @@ def clean(text: str) -> str:
     return " ".join(unicodedata.normalize("NFC", text).split())
 
 
+@lru_cache(maxsize=4096)
 def runs(text: str, *, bold: bool = False) -> tuple[tuple[str, str], ...]:
     """Split text into (font name, piece) so that every character has a glyph.
 

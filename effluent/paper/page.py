@@ -2,8 +2,10 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterator, Sequence
 from datetime import UTC
 from functools import lru_cache
+from itertools import groupby
 
 from reportlab.graphics.barcode import qrencoder
 from reportlab.lib.colors import Color, black
@@ -54,20 +56,23 @@ def witness(sheet: ManifestSheet) -> str:
 
 
 @lru_cache(maxsize=16)
-def _modules(text: str) -> tuple[int, tuple[tuple[int, int, int], ...]]:
-    """Return the side of a QR code and its dark runs as (row, column, length)."""
+def _code(text: str) -> tuple[int, str]:
+    """Return a QR code's modules a side and its dark runs as PDF rectangles, one unit a module."""
     code = qrencoder.QRCode(None, qrencoder.QRErrorCorrectLevel.M)
     code.addData(text)
     code.make()
-    found = []
-    for row, cells in enumerate(code.modules):
-        column = 0
-        while column < len(cells):
-            length = next((n for n, dark in enumerate(cells[column:]) if not dark), len(cells) - column)
-            if length:
-                found.append((row, column, length))
-            column += max(length, 1)
-    return code.moduleCount, tuple(found)
+    side = code.moduleCount
+    runs = [(row, *run) for row, cells in enumerate(code.modules) for run in _dark_runs(cells)]
+    return side, " ".join(f"{start} {side - 1 - row} {length} 1 re" for row, start, length in runs)
+
+
+def _dark_runs(cells: Sequence[bool]) -> Iterator[tuple[int, int]]:
+    start = 0
+    for dark, run in groupby(cells):
+        length = sum(1 for _ in run)
+        if dark:
+            yield start, length
+        start += length
 
 
 class Furniture:
@@ -144,12 +149,12 @@ class Furniture:
 
     def define_code(self, canvas: Canvas) -> None:
         """Define the QR code once; each page refers to it."""
-        side, dark = _modules(witness(self.sheet))
-        module = _QR_SIDE / (side + 4)
+        side, rectangles = _code(witness(self.sheet))
         canvas.beginForm(_QR_NAME, 0, 0, _QR_SIDE, _QR_SIDE)
+        canvas.scale(_QR_SIDE / (side + 4), _QR_SIDE / (side + 4))
+        canvas.translate(2, 2)
         path = canvas.beginPath()
-        for row, column, length in dark:
-            path.rect((column + 2) * module, (side + 1 - row) * module, length * module, module)
+        path._code.append(rectangles)  # type: ignore[attr-defined]
         canvas.drawPath(path, stroke=0, fill=1)
         canvas.endForm()
 
