@@ -26,7 +26,7 @@ from effluent.domain.register import (
     PointKind,
     Site,
 )
-from effluent.domain.sample import Fraction, Method, Qualifier, Result, Sample
+from effluent.domain.sample import File, Fraction, Method, Qualifier, Result, Sample
 from effluent.domain.wash import MeasuredBy, Movement, MovementKind, RunningMode, Wash, WashKind
 
 __all__ = [
@@ -40,6 +40,7 @@ __all__ = [
     "Container",
     "ContainerKind",
     "Engine",
+    "File",
     "Fraction",
     "Limit",
     "Manifest",

@@ -8,7 +8,7 @@ from enum import StrEnum
 
 from effluent.domain.field import about
 
-__all__ = ["Fraction", "Method", "Qualifier", "Result", "Sample"]
+__all__ = ["File", "Fraction", "Method", "Qualifier", "Result", "Sample"]
 
 
 class Method(StrEnum):
@@ -54,6 +54,17 @@ class Sample:
     fraction: Fraction | None = about("fraction, where filtered or extracted in the field", default=None)
     laboratory: str | None = about("laboratory it went to", refers="company", default=None)
     remarks: str = about("remarks", default="")
+
+
+@dataclass(frozen=True, kw_only=True)
+class File:
+    """A laboratory file that was read in."""
+
+    code: str = about("file number", default="")
+    name: str = about("name of the file")
+    sha256: str = about("SHA-256 of its bytes")
+    size: int = about("size in bytes")
+    layout: str = about("SHA-256 of the layout it was read with, empty for the plain column set", default="")
 
 
 @dataclass(frozen=True, kw_only=True)
