@@ -1,0 +1,272 @@
+"""The working of a verdict: enough for a person with a calculator to reach the same answer."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from fractions import Fraction as Rational
+
+from effluent.calc.reading import Reading
+from effluent.calc.rule import Basis, action_cut, limit_unit, place, rounded, written_cut
+from effluent.calc.units import KINDS, conversion, convert, decimal_text, kind_of
+from effluent.domain import Bound, BrokenBy, Limit, Outcome, Quantity, Rounding
+
+__all__ = ["Finding", "reason", "working"]
+
+_FORBIDDEN = {
+    (Bound.MAXIMUM, BrokenBy.BEYOND): ("above", ">"),
+    (Bound.MAXIMUM, BrokenBy.REACHING): ("at or above", ">="),
+    (Bound.MINIMUM, BrokenBy.BEYOND): ("below", "<"),
+    (Bound.MINIMUM, BrokenBy.REACHING): ("at or below", "<="),
+}
+_KNOWN = {
+    Basis.VALUE: ("", "="),
+    Basis.AT_MOST: ("at most ", "<="),
+    Basis.BELOW: ("less than ", "<"),
+    Basis.AT_LEAST: ("at least ", ">="),
+    Basis.ABOVE: ("more than ", ">"),
+}
+_LEFT = {
+    Outcome.WITHIN: "no value left breaks it",
+    Outcome.OVER: "every value left breaks it",
+    Outcome.UNDETERMINED: "some values left break it, some do not",
+}
+
+
+@dataclass(frozen=True, kw_only=True)
+class Finding:
+    """One reading held against one limit.
+
+    ``margin`` is the share of the limit still free. ``action_open`` says that the reading is within the
+    limit without showing on which side of the site's action level the truth lies.
+    """
+
+    reading: Reading
+    limit: Limit
+    outcome: Outcome
+    basis: Basis
+    margin: float | None = None
+    action_open: bool = False
+
+
+def reason(finding: Finding) -> str:
+    """Return in one sentence why the outcome is what it is.
+
+    Parameters
+    ----------
+    finding : Finding
+        One reading held against one limit.
+
+    Returns
+    -------
+    str
+        Amounts in the units as written.
+
+    Raises
+    ------
+    UnitUnknown
+        If a unit cannot be read.
+
+    Notes
+    -----
+    Rules: the section "Verdicts" of the documented calculations.
+    """
+    reading, limit = finding.reading, finding.limit
+    if finding.basis == Basis.OTHER_KIND:
+        return _kinds_differ(reading, limit)
+    if finding.basis == Basis.OTHER_FRACTION:
+        return f"a reading {reading} of {reading.fraction} proves nothing about a limit for {limit.fraction}"
+    if finding.outcome == Outcome.UNDETERMINED:
+        return _not_shown(finding)
+    verb = "is" if finding.outcome == Outcome.OVER else "is not"
+    sentence = f"{_subject(finding)} {verb} {_forbidden(limit)[0]} the {_named(limit)}"
+    if finding.outcome == Outcome.NEAR:
+        sentence += f", but it reaches the action level {limit.action_level}"
+    return sentence
+
+
+def working(
+    finding: Finding, beside: Sequence[Finding] = (), *, notes: Sequence[str] = ()
+) -> tuple[str, ...]:
+    """Return the arithmetic of a verdict, line by line.
+
+    Parameters
+    ----------
+    finding : Finding
+        The reading that decides.
+    beside : sequence of Finding, optional
+        All readings of the day, for a daily limit.
+    notes : sequence of str, optional
+        What a reader must know besides.
+
+    Returns
+    -------
+    tuple of str
+        Exact decimals; one that does not end is rounded to ten digits and marked ``~``.
+
+    Raises
+    ------
+    UnitUnknown
+        If a unit cannot be read.
+
+    Notes
+    -----
+    Rules: the section "Verdicts" of the documented calculations.
+    """
+    lines = [*_day(finding, beside), _reading(finding.reading), _conversion(finding), *_rule(finding.limit)]
+    if finding.basis in _KNOWN:
+        lines += [*_rounding(finding), *_comparison(finding), *_action(finding)]
+    lines += [f"outcome: {finding.outcome}: {reason(finding)}", _margin(finding)]
+    return (*lines, *(f"note: {note}" for note in notes))
+
+
+def _named(limit: Limit) -> str:
+    return f"limit {limit.value}"
+
+
+def _forbidden(limit: Limit) -> tuple[str, str]:
+    return _FORBIDDEN[limit.bound, limit.broken_by]
+
+
+def _kinds_differ(reading: Reading, limit: Limit) -> str:
+    kinds = kind_of(reading.unit or KINDS["pH"]), kind_of(limit.value.unit or KINDS["pH"])
+    sentence = f"the reading {reading} is a {kinds[0]}, the {_named(limit)} a {kinds[1]}: nothing is proved"
+    if set(kinds) == {"mass ratio", "concentration"}:
+        sentence += "; the density of the liquid would join them"
+    return sentence
+
+
+def _not_shown(finding: Finding) -> str:
+    reading, limit = finding.reading, finding.limit
+    below = finding.basis == Basis.BELOW and reading.fraction == limit.fraction
+    if below and limit.bound == Bound.MAXIMUM:
+        own = reading.reporting_limit in ("", reading.number)
+        bound = f"{'reporting limit' if own else 'bound'} {reading.number} {reading.unit}".rstrip()
+        return f"{bound} lies above the {_named(limit)}: the reading proves nothing"
+    return (
+        f"{_subject(finding)}: whether the truth is {_forbidden(limit)[0]} the {_named(limit)} is not shown"
+    )
+
+
+def _subject(finding: Finding) -> str:
+    reading, limit = finding.reading, finding.limit
+    subject = f"{_KNOWN[finding.basis][0]}{reading.number} {reading.unit}".rstrip()
+    if reading.fraction != limit.fraction:
+        subject += f" (the reading is of {reading.fraction}, the limit for {limit.fraction})"
+    if finding.basis == Basis.VALUE and limit.rounding == Rounding.SIGNIFICANT_FIGURES:
+        after = _short(rounded(_in_limit_unit(finding), limit.value))
+        subject += f", rounded to {f'{after} {limit.value.unit}'.rstrip()},"
+    return subject
+
+
+def _day(finding: Finding, beside: Sequence[Finding]) -> list[str]:
+    if not beside:
+        return []
+    listed = "; ".join(f"result {f.reading.row}: {f.reading} {f.outcome}" for f in beside)
+    return [f"readings of {finding.reading.day}: {listed}", f"deciding: result {finding.reading.row}"]
+
+
+def _reading(reading: Reading) -> str:
+    reported = f", reported as {reading.text!r}" if reading.text not in ("", str(reading)) else ""
+    flag = f", flag {reading.flag}" if reading.flag else ""
+    return (
+        f"reading: result {reading.row}, sample {reading.sample}, {reading.day}: {reading.analyte}, "
+        f"{reading.fraction}: {reading}{reported}{flag}"
+    )
+
+
+def _conversion(finding: Finding) -> str:
+    reading, limit = finding.reading, finding.limit
+    unit, wanted = reading.unit or KINDS["pH"], limit.value.unit or KINDS["pH"]
+    if finding.basis == Basis.OTHER_KIND:
+        return f"conversion: none from {unit} to {wanted}"
+    if unit == wanted:
+        return f"conversion: none needed, both in {unit}"
+    density = Quantity.parse(reading.density) if reading.density else None
+    shown = conversion(Quantity(reading.number, unit).magnitude, unit, wanted, density=density).working
+    return "conversion: " + shown.replace("×", "x").replace("≈", "~")
+
+
+def _rule(limit: Limit) -> list[str]:
+    word, _ = _forbidden(limit)
+    until = f" to {limit.effective_to}" if limit.effective_to else ""
+    where = f", {limit.written_at}" if limit.written_at else ""
+    checked = f"verified by {limit.verified_by}" if limit.verified_by else "not verified by a second person"
+    return [
+        f"limit {limit.code}: {limit.bound} {limit.value}, {limit.statistic}, {limit.analyte}, "
+        f"{limit.fraction}; broken by a reading {word} it; readings compared {_compared(limit)}",
+        f"source: {limit.authority}: {limit.document}{where}; in force from {limit.effective_from}{until}; "
+        f"entered by {limit.entered_by}, {checked}",
+    ]
+
+
+def _compared(limit: Limit) -> str:
+    return "as reported" if limit.rounding == Rounding.AS_REPORTED else "rounded to the limit's last figure"
+
+
+def _in_limit_unit(finding: Finding) -> Rational:
+    reading, unit = finding.reading, finding.limit.value.unit or KINDS["pH"]
+    return convert(reading.exact, reading.canonical_unit, unit)
+
+
+def _short(value: Rational) -> str:
+    text = decimal_text(value)
+    return text if Rational(text) == value else f"~{text}"
+
+
+def _rounding(finding: Finding) -> list[str]:
+    limit = finding.limit
+    if limit.rounding == Rounding.AS_REPORTED:
+        return []
+    line = (
+        f"rounding: half to even, to a multiple of {_short(place(limit.value))} {limit.value.unit}".rstrip()
+    )
+    if finding.basis == Basis.VALUE:
+        value = _in_limit_unit(finding)
+        line += f": {_short(value)} -> {_short(rounded(value, limit.value))}"
+    return [line]
+
+
+def _comparison(finding: Finding) -> list[str]:
+    limit, value = finding.limit, _in_limit_unit(finding)
+    symbol, edge = _forbidden(limit)[1], _short(limit.value.magnitude)
+    if finding.basis != Basis.VALUE:
+        known = f"known: truth {_KNOWN[finding.basis][1]} {_short(value)} {limit.value.unit}".rstrip()
+        return [f"{known}; the limit is broken by {symbol} {edge}: {_LEFT[finding.outcome]}"]
+    if limit.rounding == Rounding.SIGNIFICANT_FIGURES:
+        value = rounded(value, limit.value)
+    broken = "true" if _holds(value, symbol, limit.value.magnitude) else "false"
+    return [f"comparison: {_short(value)} {symbol} {edge} {limit.value.unit}".rstrip() + f" is {broken}"]
+
+
+def _holds(value: Rational, symbol: str, other: Rational) -> bool:
+    if value == other:
+        return symbol.endswith("=")
+    return value > other if symbol.startswith(">") else value < other
+
+
+def _action(finding: Finding) -> list[str]:
+    limit, level = finding.limit, action_cut(finding.limit)
+    if level is None or finding.basis != Basis.VALUE:
+        return []
+    symbol = ">=" if limit.bound == Bound.MAXIMUM else "<="
+    reached = "true" if _holds(finding.reading.exact, symbol, level.value) else "false"
+    shown = f"{_short(finding.reading.exact)} {symbol} {_short(level.value)} {limit_unit(limit.value)}"
+    return [f"action level {limit.action_level}: {shown} is {reached}"]
+
+
+def _margin(finding: Finding) -> str:
+    if finding.margin is None:
+        return "margin: none"
+    limit, value = written_cut(finding.limit).value, finding.reading.exact
+    first, second = (limit, value) if finding.limit.bound == Bound.MAXIMUM else (value, limit)
+    more = (
+        ""
+        if finding.basis == Basis.VALUE
+        else "at least "
+        if finding.outcome == Outcome.WITHIN
+        else "at most "
+    )
+    unit = limit_unit(finding.limit.value)
+    share = f"({_short(first)} - {_short(second)}) / {_short(abs(limit))} in {unit}"
+    return f"margin: {more}{share} = {finding.margin:.4g}"
