@@ -14,7 +14,7 @@ from effluent.cli.text import clip, has_hidden, printable
 from effluent.domain import Quantity
 from effluent.errors import ValueRefused
 
-__all__ = ["count", "day", "instant", "line", "line_or_nothing", "quantity", "word"]
+__all__ = ["count", "day", "instant", "line", "line_or_nothing", "quantity", "short", "word"]
 
 _LONGEST_TEXT, _LONGEST_VALUE = 2000, 100
 _DAY = r"[0-9]{4}-[0-9]{2}-[0-9]{2}"
@@ -58,7 +58,14 @@ def line(written: str) -> str:
     return line_or_nothing(written) or _refuse("it is empty; write some text")
 
 
-def _short(written: str) -> str:
+def short(written: str) -> str:
+    """Return one line of at most a hundred characters; it may be empty.
+
+    Raises
+    ------
+    click.BadParameter
+        If it is too long or holds control characters.
+    """
     return line_or_nothing(written, longest=_LONGEST_VALUE)
 
 
@@ -71,7 +78,7 @@ def quantity(written: str) -> Quantity:
         If it names none.
     """
     try:
-        return Quantity.parse(_short(written))
+        return Quantity.parse(short(written))
     except ValueRefused as error:
         raise click.BadParameter(str(error)) from error
 
@@ -84,7 +91,7 @@ def instant(written: str) -> datetime:
     click.BadParameter
         If it is not such a date and time.
     """
-    text = _short(written)
+    text = short(written)
     try:
         return _within_years(datetime.fromisoformat(_matching(_INSTANT, text)))
     except ValueError:
@@ -102,7 +109,7 @@ def day(written: str) -> date:
     click.BadParameter
         If it is not one.
     """
-    text = _short(written)
+    text = short(written)
     try:
         return _within_years(date.fromisoformat(_matching(_DAY, text)))
     except ValueError:
@@ -129,7 +136,7 @@ def count(written: str) -> int:
     click.BadParameter
         If it is not one.
     """
-    text = _short(written)
+    text = short(written)
     if re.fullmatch(r"[0-9]{1,9}", text) is None:
         _refuse(f"{_shown(text)} is not a whole number; write digits only, as in 3")
     return int(text)
@@ -139,7 +146,7 @@ def word(kind: type[StrEnum]) -> Callable[[str], StrEnum]:
     """Return a reader of one of the kind's values, or of a beginning that only one of them has."""
 
     def one(written: str) -> StrEnum:
-        text = _short(written)
+        text = short(written)
         wanted = _folded(text)
         found = [member for member in kind if wanted and _folded(member.value).startswith(wanted)]
         exactly = [member for member in found if _folded(member.value) == wanted]
