@@ -46,7 +46,7 @@ class Clock:
         if not _OLDEST_YEAR <= written.year <= _NEWEST_YEAR:
             raise ValueRefused("date", text, f"its year is not one from {_OLDEST_YEAR} to {_NEWEST_YEAR}")
         instant = self._in_zone(written, text) if written.tzinfo is None else written.astimezone(UTC)
-        return instant.replace(tzinfo=None).isoformat(timespec="microseconds") + "Z"
+        return instant.isoformat(timespec="microseconds")[:26] + "Z"
 
     def _parse(self, text: str) -> tuple[datetime, bool]:
         """Return the date and time as written, and whether a time was written."""
@@ -72,7 +72,7 @@ class Clock:
     def _in_zone(self, written: datetime, text: str) -> datetime:
         local = written.replace(tzinfo=self.zone, fold=1)
         instant = local.astimezone(UTC)
-        if instant.astimezone(self.zone).replace(tzinfo=None) != written:
+        if instant.astimezone(self.zone).utcoffset() != local.utcoffset():
             raise ValueRefused(
                 "date",
                 text,

@@ -9,26 +9,24 @@ from itertools import chain
 from pathlib import Path
 
 from effluent.errors import FileMissing, RowError, ValueRefused
-from effluent.intake.text import TextFile, detect_delimiter, detect_encoding, refused
+from effluent.intake.text import Batch, TextFile, detect_delimiter, detect_encoding, refused
 from effluent.intake.workbook import Workbook, is_workbook, open_workbook
 
-__all__ = ["CHUNK_ROWS", "Block", "Table", "heading_text", "open_table"]
+__all__ = ["Block", "Table", "heading_text", "open_table"]
 
-CHUNK_ROWS = 50_000
-_FIRST_ROWS = 1_000
 _MOST_COLUMNS = 16_384
 _SUFFIXES_REFUSED = {".xlsm", ".xlsb", ".xltm", ".xls", ".xlam"}
 
 
 @dataclass(frozen=True)
 class Block:
-    """Rows of equal width, with their row numbers in the file and the rows that do not fit.
+    """Columns of equal length, with the row numbers in the file and the rows that do not fit.
 
     A row is what a spreadsheet program shows as one: the first is 1, the heading row and empty rows
     count, a quoted cell with line breaks inside stays one row.
     """
 
-    rows: list[list[str]]
+    columns: list[Sequence[str]]
     numbers: Sequence[int]
     errors: list[RowError]
     share: float
@@ -43,8 +41,8 @@ class Table:
     heading_row: int
     headings: tuple[str, ...]
 
-    def blocks(self, size: int = CHUNK_ROWS) -> Iterator[Block]:
-        """Yield the rows below the heading row, without empty ones, in blocks of at most `size` rows.
+    def blocks(self) -> Iterator[Block]:
+        """Yield the rows below the heading row, without empty ones, some at a time.
 
         Raises
         ------
@@ -52,28 +50,37 @@ class Table:
             If the file breaks off as a table.
         """
         first = 1
-        for batch, share in self.source.batches(size):
-            start = max(self.heading_row + 1, first)
-            yield self._block(batch[start - first :], start, share)
+        for batch in self.source.batches():
+            if first > self.heading_row:
+                yield self._block(batch, first)
+            elif first + len(batch) > self.heading_row + 1:
+                rows = batch.as_rows()[self.heading_row + 1 - first :]
+                yield self._block(Batch(rows, [], batch.share), self.heading_row + 1)
             first += len(batch)
 
-    def _block(self, records: list[list[str]], first: int, share: float) -> Block:
+    def _block(self, batch: Batch, first: int) -> Block:
+        if len(batch.columns) == len(self.headings) and "" not in batch.columns[0]:
+            return Block([*batch.columns], range(first, first + len(batch)), [], batch.share)
+        rows, numbers, errors = self._fitting(batch.as_rows(), first)
+        columns = [*zip(*rows, strict=True)] if rows else [()] * len(self.headings)
+        return Block([*columns], numbers, errors, batch.share)
+
+    def _fitting(
+        self, records: list[list[str]], first: int
+    ) -> tuple[list[list[str]], list[int], list[RowError]]:
+        """Return the rows that are as wide as the heading row, without empty ones."""
         width = len(self.headings)
-        if all(map(any, records)) and set(map(len, records)) <= {width}:
-            return Block(records, range(first, first + len(records)), [], share)
         rows, numbers, errors = [], [], []
         for number, record in enumerate(records, first):
+            if not any(record):
+                continue
             cells = _trim(record, width)
             if len(cells) == width:
                 rows.append(cells)
                 numbers.append(number)
             elif any(map(str.strip, cells)):
                 errors.append(_ragged(number, cells, width))
-        return Block([row for row in rows if any(row)], _kept(numbers, rows), errors, share)
-
-
-def _kept(numbers: list[int], rows: list[list[str]]) -> list[int]:
-    return [number for number, row in zip(numbers, rows, strict=True) if any(row)]
+        return rows, numbers, errors
 
 
 def _trim(record: list[str], width: int) -> list[str]:
@@ -142,7 +149,7 @@ def _source(path: Path, encoding: str, delimiter: str, *, sheet: str, skip_rows:
 
 
 def _headings(path: Path, source: TextFile | Workbook, skip_rows: int) -> tuple[str, ...]:
-    records = chain.from_iterable(batch for batch, _ in source.batches(_FIRST_ROWS))
+    records = chain.from_iterable(batch.as_rows() for batch in source.batches())
     record = next((cells for row, cells in enumerate(records) if row == skip_rows), [])
     names = [heading_text(cell) for cell in record]
     while names and not names[-1]:

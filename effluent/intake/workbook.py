@@ -12,7 +12,7 @@ from pathlib import Path
 import python_calamine
 
 from effluent.errors import ValueRefused
-from effluent.intake.text import refused
+from effluent.intake.text import Batch, refused
 
 __all__ = ["Workbook", "is_workbook", "open_workbook"]
 
@@ -44,15 +44,15 @@ class Workbook:
     path: Path
     sheet: str
 
-    def batches(self, size: int) -> Iterator[tuple[list[list[str]], float]]:
-        """Yield blocks of rows, empty rows included, each with the share of the sheet read so far."""
+    def batches(self, size: int = 1_000) -> Iterator[Batch]:
+        """Yield `size` rows at a time, empty rows included."""
         try:
             with python_calamine.CalamineWorkbook.from_path(self.path) as book:
                 sheet = book.get_sheet_by_name(self.sheet)
                 rows, done = sheet.iter_rows(), 0
                 while batch := [[_text(cell) for cell in row] for row in islice(rows, size)]:
                     done += len(batch)
-                    yield batch, done / max(done, sheet.total_height)
+                    yield Batch(batch, [], done / max(done, sheet.total_height))
         except python_calamine.CalamineError as error:
             raise refused(self.path, f"sheet {self.sheet!r} cannot be read ({error}); {_SAVE_AS}") from error
 
