@@ -55,17 +55,18 @@ LABEL = _style("label", 6, color=GREY)
 NOTE = _style("note", 6.5, color=GREY)
 HEADING = _style("heading", 8.5, bold=True)
 
-_PADDING = [
+_PLAIN = [
+    ("FONTNAME", (0, 0), (-1, -1), REGULAR),  # or every cell would name a font that is not embedded
     ("LEFTPADDING", (0, 0), (-1, -1), 3),
     ("RIGHTPADDING", (0, 0), (-1, -1), 3),
     ("TOPPADDING", (0, 0), (-1, -1), 1.5),
     ("BOTTOMPADDING", (0, 0), (-1, -1), 2.5),
     ("VALIGN", (0, 0), (-1, -1), "TOP"),
 ]
-_GRID = TableStyle([*_PADDING, ("LINEBELOW", (0, 0), (-1, -1), 0.4, _HAIR)])
+_GRID = TableStyle([*_PLAIN, ("LINEBELOW", (0, 0), (-1, -1), 0.4, _HAIR)])
 _HEADED = TableStyle(
     [
-        *_PADDING,
+        *_PLAIN,
         ("SPAN", (0, 0), (-1, 0)),
         ("LEFTPADDING", (0, 0), (-1, 0), 0),
         ("LINEBELOW", (0, 0), (-1, 0), 0.8, black),

@@ -3,12 +3,13 @@
 from __future__ import annotations
 
 from datetime import UTC, datetime
+from hashlib import md5
 from typing import Any
 
 from reportlab.pdfgen.canvas import Canvas
 
 from effluent.paper.font import REGULAR
-from effluent.paper.page import Furniture
+from effluent.paper.page import Furniture, witness
 
 __all__ = ["LedgerTime", "PagedCanvas"]
 
@@ -32,6 +33,8 @@ class PagedCanvas(Canvas):
         super().__init__(*args, **{**options, "initialFontName": REGULAR})
         self._furniture = furniture
         self._kept: list[dict[str, Any]] = []
+        # the library would mix the clock or SOURCE_DATE_EPOCH into both
+        self._doc.signature = md5(witness(furniture.sheet).encode(), usedforsecurity=False)
         self._doc._timeStamp = LedgerTime(furniture.sheet.created_at)
         self.setCatalogEntry("Lang", furniture.sheet.language)
         self.setViewerPreference("DisplayDocTitle", "true")
