@@ -1,6 +1,7 @@
 from __future__ import annotations
 
 import json
+from pathlib import Path
 from types import SimpleNamespace
 from typing import Any
 
@@ -11,6 +12,7 @@ from effluent.__main__ import run
 from effluent.cli import register
 from effluent.domain import Person, Point, PointKind, Site
 from effluent.errors import RecordMissing
+from effluent.services.ledger import create
 from effluent.settings import CAUTION
 from tests.unit.cli.conftest import Noted
 
@@ -154,3 +156,18 @@ def test_container_takes_further_verbs() -> None:
     group = register.register_group("container", Site, commands=[])
     group.command("contents")(lambda: None)
     assert list(group.commands) == ["contents"]
+
+
+def test_amended_site_reads_back_from_a_real_ledger(
+    tmp_path: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    place = str(tmp_path / "a.ledger")
+    create(place, ANA)
+    common = ["--ledger", place, "--by", "AM"]
+    site = ["--name", "Station", "--operator", "Invented Air", "--address", "Apron", "--time-zone", "UTC"]
+    assert run(["site", "add", "LIS", *site, *common]) == 0
+    assert run(["site", "amend", "LIS", "--phone", "+1", "--reason", "left out", *common]) == 0
+    capsys.readouterr()
+    assert run(["site", "show", "LIS", "--json", "--ledger", place]) == 0
+    versions = json.loads(capsys.readouterr().out)["versions"]
+    assert [(v["version"], v["entry"], v["record"]["phone"]) for v in versions] == [(1, 2, ""), (2, 3, "+1")]
