@@ -130,7 +130,8 @@ def _refuse_other_files(path: Path) -> None:
     if path.is_dir():
         raise NotALedger(path, "it is a folder; name the ledger file in it")
     try:
-        header = path.open("rb").read(72)
+        with path.open("rb") as file:
+            header = file.read(72)
     except OSError as error:
         raise StorageFailed(path, error.strerror or "cannot be read") from error
     if not header.startswith(_SQLITE_HEADER) or int.from_bytes(header[68:72], "big") != APPLICATION_ID:
