@@ -1,0 +1,192 @@
+"""Holding what the laboratory found against the limits of the place."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Mapping, Sequence
+from datetime import date
+from typing import NamedTuple
+
+from effluent.calc.reading import Reading as LaboratoryReading
+from effluent.calc.rule import in_force
+from effluent.calc.verdict import is_computed, judge, strictest, without_reading
+from effluent.domain import Limit, Sample, Verdict
+from effluent.services.water import Water, waters
+from effluent.settings import CAUTION
+from effluent.store.ledger import Ledger
+from effluent.store.reading import Reading
+
+__all__ = ["Checked", "Unread", "Wanted", "check", "container_verdicts", "samples_of", "verdicts_for"]
+
+
+class Wanted(NamedTuple):
+    """Which samples are asked about; all that is named must hold, and days are local days of the site."""
+
+    sample: str | None = None
+    container: str | None = None
+    point: str | None = None
+    site: str | None = None
+    since: date | None = None
+    until: date | None = None
+
+
+class Unread(NamedTuple):
+    """A limit in force for some water of which there is no reading; `water` as in ``container T-1``."""
+
+    water: str
+    limit: Limit
+
+
+class Checked(NamedTuple):
+    """What the limits of the place say.
+
+    ``strictest`` has for each sample the verdict that decides; ``without_verdict`` the samples about
+    which nothing can be said, because no limit applies or nothing was read.
+    """
+
+    verdicts: tuple[Verdict, ...]
+    strictest: Mapping[str, Verdict]
+    without_reading: tuple[Unread, ...]
+    not_computed: tuple[Limit, ...]
+    without_verdict: tuple[str, ...]
+    caution: str = CAUTION
+
+
+def check(
+    ledger: Ledger, wanted: Wanted | None = None, *, against: str | None = None, as_of: str | None = None
+) -> Checked:
+    """Hold the readings of samples against the limits in force where their water may leave.
+
+    Parameters
+    ----------
+    ledger : Ledger
+        Opened.
+    wanted : Wanted, optional
+        Without it every sample.
+    against : str, optional
+        Hold caught water against the limits of this point alone.
+    as_of : str, optional
+        Answer with what was known then.
+
+    Raises
+    ------
+    RecordMissing
+        If something named is not in the ledger.
+    """
+    with ledger.reading(as_of) as reading:
+        points = None if against is None else (reading.value("point", against).code,)
+        bodies = _of_days(waters(reading, samples_of(reading, wanted or Wanted()), points=points), wanted)
+        return _checked([_Judged.of(reading, water) for water in bodies])
+
+
+def verdicts_for(
+    reading: Reading, samples: Sequence[Sample], *, points: Iterable[str] | None = None
+) -> tuple[Verdict, ...]:
+    """Return the verdicts on samples inside a view that is open already.
+
+    A sample drawn at a point is held against the limits of that point; one of a container or a wash
+    against those of all points of its site, or only of `points`. Limits that are not in force on the
+    sample's day, or not computed by this version, give no verdict.
+    """
+    judged = [_Judged.of(reading, water) for water in waters(reading, samples, points=points)]
+    return _in_order(judged)
+
+
+def container_verdicts(reading: Reading, container: str) -> tuple[Verdict, ...]:
+    """Return the verdicts on every sample drawn from a container."""
+    return verdicts_for(reading, reading.values("sample", container=container))
+
+
+def samples_of(reading: Reading, wanted: Wanted) -> tuple[Sample, ...]:
+    """Return the samples asked for, whatever their day.
+
+    Raises
+    ------
+    RecordMissing
+        If something named is not in the ledger.
+    """
+    for noun in ("container", "point", "site"):
+        if code := getattr(wanted, noun):
+            reading.value(noun, code)
+    if wanted.sample is not None:
+        found: tuple[Sample, ...] = (reading.value("sample", wanted.sample),)
+    else:
+        named = {"container": wanted.container, "point": wanted.point}
+        found = reading.values("sample", **{noun: code for noun, code in named.items() if code})
+    found = tuple(
+        sample
+        for sample in found
+        if wanted.container in (None, sample.container) and wanted.point in (None, sample.point)
+    )
+    if wanted.site is None:
+        return found
+    inside = {s.code for water in waters(reading, found) if water.site == wanted.site for s in water.samples}
+    return tuple(sample for sample in found if sample.code in inside)
+
+
+class _Judged(NamedTuple):
+    """One water with its verdicts, and the limits that gave none."""
+
+    water: Water
+    verdicts: tuple[Verdict, ...]
+    unread: tuple[Limit, ...]
+    not_computed: tuple[Limit, ...]
+
+    @classmethod
+    def of(cls, reading: Reading, water: Water) -> _Judged:
+        limits = _limits(reading, water)
+        computed = [limit for limit in limits if is_computed(limit)]
+        readings = _readings(reading, water)
+        return cls(
+            water,
+            judge(readings, computed),
+            without_reading(readings, computed),
+            tuple(limit for limit in limits if not is_computed(limit)),
+        )
+
+
+def _limits(reading: Reading, water: Water) -> list[Limit]:
+    """Return the limits of a water's points that are in force on the day of any of its samples."""
+    days = {water.day(sample) for sample in water.samples}
+    found: tuple[Limit, ...] = reading.values("limit", point=water.points)
+    return [limit for limit in found if any(in_force(limit, day) for day in days)]
+
+
+def _readings(reading: Reading, water: Water) -> list[LaboratoryReading]:
+    samples = {sample.code: sample for sample in water.samples}
+    days = {code: water.day(sample) for code, sample in samples.items()}
+    return [
+        LaboratoryReading.of(
+            result, day=days[result.sample], late=water.is_late(samples[result.sample], result)
+        )
+        for result in reading.results(samples=samples)
+    ]
+
+
+def _of_days(bodies: Sequence[Water], wanted: Wanted | None) -> list[Water]:
+    first = (wanted and wanted.since) or date.min
+    last = (wanted and wanted.until) or date.max
+    kept = [(water, tuple(s for s in water.samples if first <= water.day(s) <= last)) for water in bodies]
+    return [
+        Water(water.label, samples, water.site, water.zone, water.points)
+        for water, samples in kept
+        if samples
+    ]
+
+
+def _in_order(judged: Iterable[_Judged]) -> tuple[Verdict, ...]:
+    found = [verdict for each in judged for verdict in each.verdicts]
+    return tuple(sorted(found, key=lambda verdict: (verdict.day, verdict.samples)))
+
+
+def _checked(judged: Sequence[_Judged]) -> Checked:
+    verdicts = _in_order(judged)
+    deciding = strictest(verdicts)
+    silent = [s.code for each in judged for s in each.water.samples if s.code not in deciding]
+    not_computed = {limit.code: limit for each in judged for limit in each.not_computed}
+    return Checked(
+        verdicts=verdicts,
+        strictest=deciding,
+        without_reading=tuple(Unread(each.water.label, limit) for each in judged for limit in each.unread),
+        not_computed=tuple(not_computed.values()),
+        without_verdict=tuple(silent),
+    )
