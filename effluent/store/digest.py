@@ -2,6 +2,7 @@
 
 Rows of one table are digested as the compact JSON array of their value arrays, in the order of their row
 numbers and columns; an entry as the compact JSON array of its header, which holds the digests of its rows.
+The header states the number of columns too: one that a later version adds comes last and stays outside.
 """
 
 from __future__ import annotations
@@ -24,12 +25,14 @@ class RowDigest:
     def __init__(self) -> None:
         self._hash = hashlib.sha256(b"[")
         self.count = 0
+        self.columns = 0
 
     def update(self, rows: Sequence[Sequence[Plain]]) -> None:
         """Take in further rows."""
         if rows:
             self._hash.update((b"," if self.count else b"") + _compact(rows)[1:-1])
             self.count += len(rows)
+            self.columns = len(rows[0])
 
     def hexdigest(self) -> str:
         """Return the digest of the rows so far."""
@@ -44,6 +47,7 @@ class Brought(NamedTuple):
     table: str
     first_row: int
     rows: int
+    columns: int
     digest: str
 
 
@@ -55,8 +59,8 @@ def contents_text(brought: Iterable[Brought]) -> str:
 def read_contents(text: str) -> tuple[Brought, ...]:
     """Return what an entry's contents column says; a text that says nothing gives no parts."""
     try:
-        return tuple(Brought(str(t), int(f), int(c), str(d)) for t, f, c, d in json.loads(text))
-    except (ValueError, TypeError):
+        return tuple(Brought(str(t), int(f), int(n), int(c), str(d)) for t, f, n, c, d in json.loads(text))
+    except (ValueError, TypeError, RecursionError):
         return ()
 
 

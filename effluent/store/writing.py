@@ -96,7 +96,7 @@ class Writing(Reading):
 
     def _brought(self) -> Iterable[Brought]:
         for table, digest in self._digests.items():
-            yield Brought(table, self._first_rows[table], digest.count, digest.hexdigest())
+            yield Brought(table, self._first_rows[table], digest.count, digest.columns, digest.hexdigest())
 
     def _free_code(self, noun: Noun, code: str) -> str:
         if not code:
