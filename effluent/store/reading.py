@@ -107,6 +107,33 @@ class Reading:
         rows = self._connection.execute(query.order_by(order)).mappings().all()
         return tuple(self._revive(kind, row) for row in rows)
 
+    def referring(self, noun: str, code: str) -> tuple[str, ...]:
+        """Return the records that stand and refer to a record, as ``wash W-0001``."""
+        found = [
+            f"{kind.name} {value.code}"
+            for kind in NOUNS.values()
+            for column in kind.table.columns
+            if column.info.get("noun") == noun
+            for value in self.values(kind.name, **{column.name: code})
+        ]
+        for manifest in self.values("manifest") if noun in ("container", "company") else ():
+            if code in (*manifest.carriers, *(line.container for line in manifest.lines)):
+                found.append(f"manifest {manifest.code}")
+        if noun == "sample" and (results := self.results(samples=[code])):
+            found.extend(f"result {result.row}" for result in results)
+        return tuple(dict.fromkeys(found))
+
+    def in_record_order(self, noun: str, codes: Iterable[str]) -> tuple[str, ...]:
+        """Return codes in the order they were first recorded."""
+        keys = [key_of(noun, code) for code in codes]
+        query = select(_RECORD.c.row, _RECORD.c.key)
+        found = [
+            tuple(row)
+            for start in range(0, len(keys), _CHUNK)
+            for row in self._connection.execute(query.where(_RECORD.c.key.in_(keys[start : start + _CHUNK])))
+        ]
+        return tuple(key.partition("/")[2] for _, key in sorted(found))
+
     def versions(self, noun: str, code: str) -> tuple[Version, ...]:
         """Return every version of a record, oldest first, voided ones too."""
         kind = NOUNS[noun]

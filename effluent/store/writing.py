@@ -10,7 +10,7 @@ from typing import Any
 from sqlalchemy import Connection, Table, func, insert, select
 
 from effluent.domain import Manifest, Result
-from effluent.errors import AlreadyRecorded, RecordMissing, ValueRefused
+from effluent.errors import AlreadyRecorded, RecordMissing, StateRefused, ValueRefused
 from effluent.store.base import EntryRow, LedgerRow, RecordRow
 from effluent.store.column import Plain, key_of, plain, plain_fields, utc_text
 from effluent.store.digest import GENESIS, Brought, RowDigest, contents_text, entry_digest
@@ -33,6 +33,7 @@ class Writing(Reading):
         self._next_rows: dict[str, int] = {}
         self._first_rows: dict[str, int] = {}
         self._digests: dict[str, RowDigest] = {}
+        self._explanations: list[str] = []
 
     def record(self, value: Any) -> str:
         """Add a new record and return its code; one is made up where none was given."""
@@ -50,9 +51,20 @@ class Writing(Reading):
         return str(value.code)
 
     def void(self, noun: str, code: str) -> None:
-        """Add a version that says the record does not stand."""
+        """Add a version that says the record does not stand.
+
+        Raises
+        ------
+        StateRefused
+            If something that stands refers to it.
+        """
         kind = NOUNS[noun]
         value = self.value(noun, code)
+        if referring := self.referring(noun, code):
+            named = ", ".join(referring[:3]) + (
+                f" and {len(referring) - 3} more" if len(referring) > 3 else ""
+            )
+            raise StateRefused(f"{noun} {code}", f"referred to by {named}", "void or amend that first")
         self._insert_version(kind, value, version=self._last_version(kind, code) + 1, voided=True)
 
     def add_result(self, result: Result) -> int:
@@ -73,6 +85,10 @@ class Writing(Reading):
             raise RecordMissing("result", number, "see: effluent result list")
         self._insert(table_of(ResultVoidRow), [(number,)])
 
+    def explain(self, text: str) -> None:
+        """Add to the reason that the entry will keep."""
+        self._explanations.append(text)
+
     def number_ledger(self, number: str) -> None:
         """Give a new ledger its number; once, in its first entry."""
         self._insert(table_of(LedgerRow), [(number, FORMAT)])
@@ -86,7 +102,7 @@ class Writing(Reading):
             stamp,
             recorded_by,
             action,
-            reason,
+            "; ".join(filter(None, [reason, *self._explanations])),
             contents_text(self._brought()),
             previous.digest if previous else GENESIS,
         )
