@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from dataclasses import replace
 from typing import Any, NamedTuple
 from zoneinfo import ZoneInfo, ZoneInfoNotFoundError
 
+from effluent.calc.plausible import read_ratio
 from effluent.calc.units import canonical
 from effluent.domain import Cleaner, CleanerForm, Container, Quantity, Site
 from effluent.errors import ValueRefused
@@ -16,7 +17,7 @@ from effluent.store.noun import noun_of
 from effluent.store.reading import Version
 from effluent.store.writing import Writing
 
-__all__ = ["Shown", "add", "amend", "check", "check_quantities", "listing", "show", "void"]
+__all__ = ["Shown", "add", "amend", "check", "check_quantities", "listing", "need_reason", "show", "void"]
 
 
 class Shown(NamedTuple):
@@ -35,16 +36,23 @@ def add(ledger: Ledger, value: Any, *, by: str, reason: str = "") -> str:
 
 
 def amend(
-    ledger: Ledger, noun: str, code: str, changes: Mapping[str, object], *, by: str, reason: str
+    ledger: Ledger,
+    noun: str,
+    code: str,
+    changes: Mapping[str, object],
+    *,
+    by: str,
+    reason: str,
+    then: Callable[[Writing], None] | None = None,
 ) -> str:
-    """Record a new version of something; the old one stays readable.
+    """Record a new version of something; the old one stays readable. `then` looks at what it leads to.
 
     Raises
     ------
     ValueRefused
         If nothing changes or no reason is given.
     """
-    _need_reason(reason, "amend")
+    need_reason(reason, "amend")
 
     def job(writing: Writing) -> str:
         old = writing.value(noun, code)
@@ -52,14 +60,17 @@ def amend(
         if new == old:
             raise ValueRefused(noun, code, "nothing would change; name what to change")
         check(new)
-        return writing.amend(new)
+        writing.amend(new)
+        if then is not None:
+            then(writing)
+        return code
 
     return ledger.write(job, by=by, action=f"amend {noun}", reason=reason)
 
 
 def void(ledger: Ledger, noun: str, code: str, *, by: str, reason: str) -> None:
     """Record that something does not stand; it stays readable."""
-    _need_reason(reason, "void")
+    need_reason(reason, "void")
     ledger.write(lambda writing: writing.void(noun, code), by=by, action=f"void {noun}", reason=reason)
 
 
@@ -86,9 +97,8 @@ def check(value: Any) -> None:
     check_quantities(value)
     if isinstance(value, Site):
         _check_zone(value.time_zone)
-    if isinstance(value, Cleaner) and bool(value.mix_ratio) != (value.form is CleanerForm.CONCENTRATE):
-        remedy = "a concentrate has a mix ratio as in 1:4, a ready-to-use cleaner has none"
-        raise ValueRefused("mix ratio", value.mix_ratio, remedy)
+    if isinstance(value, Cleaner):
+        _check_ratio(value)
     if isinstance(value, Container) and not 0 < value.fill_fraction.magnitude <= 100:
         raise ValueRefused("fill fraction", str(value.fill_fraction), "use a share above 0 % and up to 100 %")
 
@@ -103,6 +113,14 @@ def check_quantities(value: Any) -> None:
                 raise ValueRefused(field.name.replace("_", " "), str(quantity), "it cannot be negative")
 
 
+def _check_ratio(cleaner: Cleaner) -> None:
+    if bool(cleaner.mix_ratio) != (cleaner.form is CleanerForm.CONCENTRATE):
+        remedy = "a concentrate has a mix ratio as in 1:4, a ready-to-use cleaner has none"
+        raise ValueRefused("mix ratio", cleaner.mix_ratio, remedy)
+    if cleaner.mix_ratio:
+        read_ratio(cleaner.mix_ratio)
+
+
 def _check_zone(name: str) -> None:
     try:
         ZoneInfo(name)
@@ -112,6 +130,12 @@ def _check_zone(name: str) -> None:
         ) from error
 
 
-def _need_reason(reason: str, verb: str) -> None:
+def need_reason(reason: str, verb: str) -> None:
+    """Refuse a correction without a reason.
+
+    Raises
+    ------
+    ValueRefused
+    """
     if not reason.strip():
         raise ValueRefused("reason", reason, f"say why, as in: {verb} … --reason 'misread the gauge'")

@@ -1,0 +1,224 @@
+"""Containers: how full they are, of what, and water moved between or out of them."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Mapping
+from dataclasses import dataclass, replace
+from datetime import datetime
+from fractions import Fraction
+
+from effluent.calc import contents as mixing
+from effluent.calc.contents import Flow
+from effluent.calc.number import decimal_text
+from effluent.calc.units import canonical
+from effluent.domain import CleanerType, Container, Movement, MovementKind, Site, Wash
+from effluent.errors import StateRefused, ValueRefused, VolumeRefused
+from effluent.services import register
+from effluent.services.moment import local, past
+from effluent.services.register import check, need_reason
+from effluent.services.shipment import shipped_containers
+from effluent.store.ledger import Ledger
+from effluent.store.reading import Reading
+from effluent.store.writing import Writing
+
+__all__ = [
+    "Contents",
+    "Origin",
+    "amend",
+    "check_levels",
+    "contents",
+    "contents_of",
+    "move",
+    "void_movement",
+    "working_capacity",
+]
+
+
+@dataclass(frozen=True)
+class Origin:
+    """Water in a container that came from one wash, in litres, exactly."""
+
+    wash: Wash
+    volume_l: Fraction
+    cleaner_type: CleanerType | None
+
+
+@dataclass(frozen=True)
+class Contents:
+    """What a container holds: level and working capacity in litres, exactly, and its origins."""
+
+    container: Container
+    level_l: Fraction
+    capacity_l: Fraction
+    origins: tuple[Origin, ...]
+    movements: tuple[Movement, ...]
+
+
+def working_capacity(container: Container) -> Fraction:
+    """Return the litres a container may be filled to, exactly."""
+    return canonical(container.capacity, "volume") * canonical(container.fill_fraction, "share") / 100
+
+
+def contents(ledger: Ledger, code: str, *, as_of: str | None = None) -> Contents:
+    """Return what a container holds, by origin."""
+    with ledger.reading(as_of) as reading:
+        return contents_of(reading, code)
+
+
+def contents_of(reading: Reading, code: str) -> Contents:
+    """Return what a container holds in an open view; origins in the order they were washed."""
+    container: Container = reading.value("container", code)
+    movements = _connected(reading, {code})
+    volumes = mixing.contents(flows_of(movements.values())).get(code, {})
+    washes = {wash.code: wash for wash in reading.values("wash", key=[w for w in volumes if w])}
+    origins = [_origin(reading, washes[name], volume) for name, volume in volumes.items() if volume]
+    own = tuple(m for m in movements.values() if code in (m.source, m.target))
+    level = sum(volumes.values(), Fraction(0))
+    ordered = tuple(sorted(origins, key=lambda origin: origin.wash.performed_at))
+    return Contents(container, level, working_capacity(container), ordered, own)
+
+
+def amend(ledger: Ledger, code: str, changes: Mapping[str, object], *, by: str, reason: str) -> str:
+    """Record a new version of a container; what it held at any time must still fit.
+
+    Raises
+    ------
+    VolumeRefused, StateRefused
+    """
+
+    def still_fits(writing: Writing) -> None:
+        check_levels(writing, [code])
+
+    return register.amend(ledger, "container", code, changes, by=by, reason=reason, then=still_fits)
+
+
+def move(ledger: Ledger, movement: Movement, *, by: str, reason: str = "") -> str:
+    """Record a transfer or a withdrawal and return its number.
+
+    Raises
+    ------
+    ValueRefused, VolumeRefused, StateRefused
+        If it contradicts itself, would leave a container below empty or above its working
+        capacity at any time, or touches a container that was shipped.
+    """
+    _check_ends(movement)
+
+    def job(writing: Writing) -> str:
+        site = writing.value("site", writing.value("container", movement.source or "").site)
+        placed = replace(movement, moved_at=_moment(movement, site, ledger))
+        check(placed)
+        code = writing.record(placed)
+        check_levels(writing, {movement.source, movement.target})
+        return code
+
+    return ledger.write(job, by=by, action=f"record {movement.kind}", reason=reason)
+
+
+def void_movement(ledger: Ledger, code: str, *, by: str, reason: str) -> None:
+    """Record that a transfer or withdrawal does not stand."""
+    need_reason(reason, "void")
+
+    def job(writing: Writing) -> None:
+        movement: Movement = writing.value("movement", code)
+        if movement.kind is MovementKind.FILL:
+            raise StateRefused(
+                f"movement {code}", "the fill of a wash", f"amend wash {movement.wash} instead"
+            )
+        writing.void("movement", code)
+        check_levels(writing, {movement.source, movement.target})
+
+    ledger.write(job, by=by, action="void movement", reason=reason)
+
+
+def check_levels(writing: Writing, touched: Iterable[str | None]) -> None:
+    """Refuse what would leave a touched container impossible at any time, or touches a shipped one.
+
+    Raises
+    ------
+    StateRefused, VolumeRefused
+    """
+    codes = sorted({code for code in touched if code is not None})
+    shipped = shipped_containers(writing)
+    for code in codes:
+        if code in shipped:
+            raise StateRefused(
+                f"container {code}", "shipped", "it takes no more water and gives none; use another"
+            )
+    capacities = {code: working_capacity(writing.value("container", code)) for code in codes}
+    found = mixing.first_violation(flows_of(_touching(writing, codes).values()), capacities)
+    if found is not None:
+        at = f"{found.at:%Y-%m-%d %H:%M} UTC"
+        raise VolumeRefused(
+            found.container,
+            f"it would be {found.what} at {at}: "
+            f"{_litres(found.level)} of {_litres(found.capacity)} working capacity",
+        )
+
+
+def flows_of(movements: Iterable[Movement]) -> list[Flow]:
+    """Return movements as exact flows; equal times keep the order in which they were recorded."""
+    return [
+        Flow(
+            at=m.moved_at,
+            order=order,
+            volume_l=canonical(m.volume, "volume"),
+            origin=m.wash,
+            source=m.source,
+            target=m.target,
+        )
+        for order, m in enumerate(movements)
+    ]
+
+
+def _touching(reading: Reading, codes: Iterable[str]) -> dict[str, Movement]:
+    wanted = list(codes)
+    found = (*reading.values("movement", source=wanted), *reading.values("movement", target=wanted))
+    return _in_order(reading, {movement.code: movement for movement in found})
+
+
+def _connected(reading: Reading, codes: set[str]) -> dict[str, Movement]:
+    """Return the movements of containers and of every container whose water reached them."""
+    movements: dict[str, Movement] = {}
+    fresh = codes
+    while fresh:
+        found = _touching(reading, fresh)
+        movements |= found
+        known = codes
+        codes = codes | {m.source for m in found.values() if m.source}
+        fresh = codes - known
+    return _in_order(reading, movements)
+
+
+def _in_order(reading: Reading, movements: Mapping[str, Movement]) -> dict[str, Movement]:
+    order = {code: place for place, code in enumerate(reading.in_record_order("movement", list(movements)))}
+    return dict(sorted(movements.items(), key=lambda item: order[item[0]]))
+
+
+def _origin(reading: Reading, wash: Wash, volume: Fraction) -> Origin:
+    kind = reading.value("cleaner", wash.cleaner).type if wash.cleaner else None
+    return Origin(wash, volume, kind)
+
+
+def _check_ends(movement: Movement) -> None:
+    if movement.kind is MovementKind.FILL:
+        raise ValueRefused("movement", movement.kind.value, "a fill is recorded with its wash")
+    if movement.source is None:
+        raise ValueRefused("movement", movement.kind.value, "name the container it left")
+    if (movement.kind is MovementKind.TRANSFER) != (movement.target is not None):
+        raise ValueRefused(
+            "movement", movement.kind.value, "a transfer goes into a container, a withdrawal does not"
+        )
+    if movement.source == movement.target:
+        raise ValueRefused("movement", movement.source, "it cannot go into the container it left")
+    if movement.kind is MovementKind.WITHDRAWAL and not movement.destination:
+        raise ValueRefused("destination", "", "say where the water went")
+    if canonical(movement.volume, "volume") == 0:
+        raise ValueRefused("volume", str(movement.volume), "nothing would move")
+
+
+def _moment(movement: Movement, site: Site, ledger: Ledger) -> datetime:
+    return past("time of the movement", local(movement.moved_at, site), ledger.clock())
+
+
+def _litres(volume: Fraction | None) -> str:
+    return "unlimited" if volume is None else f"{decimal_text(volume, digits=6)} L"

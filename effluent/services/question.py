@@ -1,0 +1,28 @@
+"""What is plausible only with a reason."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+
+from effluent.errors import Questioned
+from effluent.store.writing import Writing
+
+__all__ = ["answer"]
+
+_REMEDY = "check the figures; if they are right all the same, repeat with --accept and the reason"
+
+
+def answer(writing: Writing, questions: Iterable[str], *, accept: str) -> None:
+    """Let the entry keep the answer to what is questioned.
+
+    Raises
+    ------
+    Questioned
+        If something is questioned and nobody accepted it.
+    """
+    asked = tuple(questions)
+    if not asked:
+        return
+    if not accept.strip():
+        raise Questioned(asked, _REMEDY)
+    writing.explain(f"accepted: {accept.strip()} (questioned: {'; '.join(asked)})")
