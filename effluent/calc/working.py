@@ -9,7 +9,7 @@ from fractions import Fraction as Rational
 from effluent.calc.reading import Reading
 from effluent.calc.rule import Basis, action_cut, limit_unit, place, rounded, written_cut
 from effluent.calc.units import KINDS, conversion, convert, decimal_text, kind_of
-from effluent.domain import Bound, BrokenBy, Limit, Outcome, Quantity, Rounding
+from effluent.domain import Bound, BrokenBy, Fraction, Limit, Outcome, Quantity, Rounding
 
 __all__ = ["Finding", "reason", "working"]
 
@@ -143,9 +143,11 @@ def _not_shown(finding: Finding) -> str:
         own = reading.reporting_limit in ("", reading.number)
         bound = f"{'reporting limit' if own else 'bound'} {reading.number} {reading.unit}".rstrip()
         return f"{bound} lies above the {_named(limit)}: the reading proves nothing"
-    return (
-        f"{_subject(finding)}: whether the truth is {_forbidden(limit)[0]} the {_named(limit)} is not shown"
-    )
+    what = f"the truth is {_forbidden(limit)[0]} the {_named(limit)}"
+    sentence = f"{_subject(finding)}: whether {what} is not shown"
+    if {reading.fraction, limit.fraction} == {Fraction.TOTAL, Fraction.TOTAL_RECOVERABLE}:
+        sentence += f"; if the limit's document takes both as one, enter it for {reading.fraction} too"
+    return sentence
 
 
 def _subject(finding: Finding) -> str:

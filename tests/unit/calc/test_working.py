@@ -163,6 +163,13 @@ REASONS = [
         "whether the truth is above the limit 0.11 mg/L is not shown",
     ),
     (
+        Fraction.TOTAL_RECOVERABLE,
+        "0.01 mg/L",
+        "at least 0.01 mg/L (the reading is of total recoverable, the limit for total): "
+        "whether the truth is above the limit 0.11 mg/L is not shown; "
+        "if the limit's document takes both as one, enter it for total recoverable too",
+    ),
+    (
         Fraction.TOTAL,
         "0.01 mg/kg",
         "the reading 0.01 mg/kg is a mass ratio, the limit 0.11 mg/L a concentration: "
