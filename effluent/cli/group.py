@@ -13,11 +13,17 @@ __all__ = ["TABLE", "Group", "RootGroup", "root"]
 
 TABLE: dict[str, tuple[str, str]] = {
     "convert": ("effluent.cli.convert:convert", "Convert a value to another unit, exactly."),
+    "trace": (
+        "effluent.cli.trace:trace",
+        "Walk the chain from any record to the nozzle and to the manifest.",
+    ),
     "site": ("effluent.cli.register:site", "Sites: where engines are washed and water is held."),
     "point": ("effluent.cli.register:point", "Discharge points: where water may leave a site."),
     "engine": ("effluent.cli.register:engine", "Engines that are washed."),
     "cleaner": ("effluent.cli.register:cleaner", "Gas-path cleaners."),
-    "container": ("effluent.cli.register:container", "Drums, totes, bowsers and tanks."),
+    "container": ("effluent.cli.container:container", "Drums, totes, bowsers and tanks."),
+    "wash": ("effluent.cli.wash:wash", "Washes: what was put in, caught and filled."),
+    "sample": ("effluent.cli.sample:sample", "Samples of containers, wash streams and discharge points."),
     "person": ("effluent.cli.register:person", "People who record, sample, verify or approve."),
     "company": ("effluent.cli.register:company", "Carriers, receiving facilities and laboratories."),
 }

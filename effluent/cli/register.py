@@ -12,7 +12,7 @@ from effluent.cli import option, show
 from effluent.cli.field import build, changes, fields, fields_as_options
 from effluent.cli.group import TABLE, Group
 from effluent.cli.value import line
-from effluent.domain import Cleaner, Company, Container, Engine, Person, Point, Site
+from effluent.domain import Cleaner, Company, Engine, Person, Point, Site
 
 if TYPE_CHECKING:
     from effluent.services.register import Shown
@@ -23,7 +23,6 @@ __all__ = [
     "amend_command",
     "cleaner",
     "company",
-    "container",
     "engine",
     "list_command",
     "person",
@@ -222,6 +221,5 @@ site = register_group("site", Site)
 point = register_group("point", Point)
 engine = register_group("engine", Engine)
 cleaner = register_group("cleaner", Cleaner)
-container = register_group("container", Container)
 person = register_group("person", Person)
 company = register_group("company", Company)
