@@ -175,8 +175,10 @@ def _string(key: str, value: Any) -> str:
 
 
 def _cell(key: str, value: Any) -> str:
-    """Return a constant: a text, or a number as the text it is."""
-    return str(value) if type(value) in (int, float) else _string(key, value)
+    """Return a constant, written as the laboratory would write the cell."""
+    if type(value) is float:
+        raise ValueRefused(key, value, "write it between quotation marks, with the decimal mark of the file")
+    return str(value) if type(value) is int else _string(key, value)
 
 
 def _table(key: str, value: Any) -> dict[str, Any]:

@@ -15,7 +15,7 @@ from typing import TYPE_CHECKING, NamedTuple
 from effluent.errors import ValueRefused
 
 if TYPE_CHECKING:
-    from _csv import _reader as CsvReader
+    from _csv import Reader
 
 __all__ = ["DELIMITERS", "Batch", "TextFile", "detect_delimiter", "detect_encoding"]
 
@@ -191,7 +191,7 @@ class TextFile:
         joined = map(_DIVIDER.join, rows)
         return [next(joined) if '"' in line else line.replace(self.delimiter, _DIVIDER) for line in lines]
 
-    def _reader(self, lines: Iterable[str]) -> CsvReader:
+    def _reader(self, lines: Iterable[str]) -> Reader:
         return csv.reader(lines, delimiter=self.delimiter, strict=True, skipinitialspace=True)
 
     def _quoted(self, text: str, handle: TextIOWrapper, lines_before: int) -> tuple[list[list[str]], int]:

@@ -54,6 +54,7 @@ def test_wide_columns_say_analyte_and_unit(read):
         ("colums = 1", "did you mean columns"),
         ("[columns]\nsampel = 'x'", "did you mean sample"),
         ("[constants]\nlaboratry = 'x'", "did you mean laboratory"),
+        ("[constants]\nreporting_limit = 0.5", "decimal mark of the file"),
         ("[columns]\nsample = 5", "write a text between quotation marks"),
         ("columns = 'x'", r"write it as a table: \[columns\]"),
         ("[skip]\nType = 'QC'", "list the cells"),
