@@ -1,0 +1,109 @@
+"""Whether the chain behind a manifest is whole: contents, washes, samples, results, verdicts, parties."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Iterator
+from typing import NamedTuple
+
+from effluent.domain import Manifest, Outcome, Sample, Verdict
+from effluent.services.check import verdicts_for
+from effluent.services.container import Contents, contents_of
+from effluent.store.reading import Reading
+
+__all__ = ["Cargo", "adverse", "cargo_of", "missing_links"]
+
+_OPEN = (Outcome.OVER, Outcome.UNDETERMINED)
+
+
+class Cargo(NamedTuple):
+    """What one container carries, and what is known of it.
+
+    ``samples`` are those taken after the last water went in; earlier ones speak for other water.
+    """
+
+    contents: Contents
+    samples: tuple[Sample, ...]
+    verdicts: tuple[Verdict, ...]
+
+
+def cargo_of(reading: Reading, container: str) -> Cargo:
+    """Return what a container carries and what the laboratory said about it."""
+    contents = contents_of(reading, container)
+    samples = _speaking(contents, reading.values("sample", container=container))
+    return Cargo(contents, samples, verdicts_for(reading, samples))
+
+
+def missing_links(reading: Reading, manifest: Manifest) -> tuple[str, ...]:
+    """Return every link that a manifest lacks before it can be issued, one sentence each."""
+    links = [*_missing_facts(manifest), *_missing_parties(reading, manifest)]
+    containers = [line.container for line in manifest.lines]
+    gone = _gone(reading, "container", containers)
+    links += [f"container {code}: its record was voided" for code in gone]
+    for code in containers:
+        if code not in gone:
+            links += _missing_of(reading, cargo_of(reading, code))
+    return tuple(links)
+
+
+def adverse(reading: Reading, manifest: Manifest) -> tuple[str, ...]:
+    """Return the verdicts over a limit or undetermined, one sentence each."""
+    return tuple(
+        f"container {line.container}, sample {', '.join(verdict.samples)}: {verdict.limit.analyte}"
+        f" {verdict.limit.fraction} {verdict.outcome} ({verdict.reason})"
+        for line in manifest.lines
+        for verdict in cargo_of(reading, line.container).verdicts
+        if verdict.outcome in _OPEN
+    )
+
+
+def _speaking(contents: Contents, samples: Iterable[Sample]) -> tuple[Sample, ...]:
+    code = contents.container.code
+    fills = [movement.moved_at for movement in contents.movements if movement.target == code]
+    return tuple(sample for sample in samples if fills and sample.started_at > max(fills))
+
+
+def _missing_facts(manifest: Manifest) -> Iterator[str]:
+    if not manifest.lines:
+        yield "no container is named"
+    if not manifest.carriers:
+        yield "no carrier is named"
+    if not manifest.emergency_phone:
+        yield f"no emergency telephone is named, neither here nor at site {manifest.site}"
+
+
+def _missing_parties(reading: Reading, manifest: Manifest) -> list[str]:
+    parties = [*manifest.carriers, manifest.facility]
+    gone = [f"company {code}: its record was voided" for code in _gone(reading, "company", parties)]
+    return gone + [f"site {code}: its record was voided" for code in _gone(reading, "site", [manifest.site])]
+
+
+def _gone(reading: Reading, noun: str, codes: list[str]) -> list[str]:
+    standing = {value.code for value in reading.values(noun, key=codes)}
+    return [code for code in codes if code not in standing]
+
+
+def _missing_of(reading: Reading, cargo: Cargo) -> Iterator[str]:
+    code = cargo.contents.container.code
+    if not cargo.contents.level_l:
+        yield f"container {code}: it holds nothing on record"
+    elif sum(origin.volume_l for origin in cargo.contents.origins) < cargo.contents.level_l:
+        yield f"container {code}: some of its water came from no recorded wash"
+    if not cargo.samples:
+        yield f"container {code}: {_no_sample(reading, code)}"
+    elif unread := _without_results(reading, cargo.samples):
+        yield from (f"container {code}: sample {sample} has no results" for sample in unread)
+    elif not cargo.verdicts:
+        yield f"container {code}: no verdict; no limit of site {cargo.contents.container.site} applies"
+
+
+def _no_sample(reading: Reading, container: str) -> str:
+    older = [sample.code for sample in reading.values("sample", container=container)]
+    if older:
+        return f"water went in after its last sample ({older[-1]}); take another"
+    return "no sample was taken"
+
+
+def _without_results(reading: Reading, samples: tuple[Sample, ...]) -> list[str]:
+    codes = [sample.code for sample in samples]
+    known = {key.partition("/")[2] for key in reading.result_columns(["sample"], samples=codes)["sample"]}
+    return [code for code in codes if code not in known]
