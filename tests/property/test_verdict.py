@@ -120,7 +120,8 @@ def test_verdict_equals_the_one_of_rational_arithmetic(pair):
     assert verdict.outcome == naive(reading, limit)
 
 
-@given(st.lists(pairs(), max_size=8))
+@settings(max_examples=30)
+@given(st.lists(pairs(), max_size=6))
 def test_many_readings_get_the_verdicts_they_get_alone(drawn):
     readings = [reading for reading, _ in drawn]
     for _, limit in drawn[:2]:
