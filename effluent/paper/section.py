@@ -62,9 +62,7 @@ def _first_page(sheet: ManifestSheet, width: float) -> list[Flowable]:
         _generator(sheet, width),
         _parties(sheet, carriers, width),
         _lines(sheet.lines[:FIRST_PAGE_LINES], 1, width, first_page=True),
-        grid(
-            [[field("Special handling and further information (item 14)", sheet.special_handling)]], [width]
-        ),
+        _handling(sheet, width),
         *_cautions(sheet),
         *_signatures(_first_signers(carriers), width),
     ]
@@ -139,6 +137,18 @@ def _line(number: int, line: SheetLine) -> Row:
         [words(line.unit_code), words(line.unit_word, SMALL)],
         [words(", ".join(line.waste_codes))],
     ]
+
+
+def _handling(sheet: ManifestSheet, width: float) -> Flowable:
+    annexes = (
+        f"A, laboratory summary, rows: {len(sheet.laboratory) or 'none'}",
+        f"B, origin of the water, rows: {len(sheet.origins) or 'none'}",
+    )
+    cells = [
+        field("Special handling and further information (item 14)", sheet.special_handling),
+        field("Annexes", *annexes),
+    ]
+    return grid([cells], _shares(width, 68, 32))
 
 
 def _cautions(sheet: ManifestSheet) -> list[Flowable]:

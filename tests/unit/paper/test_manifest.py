@@ -14,7 +14,7 @@ import pytest
 from effluent.errors import NotPrintable, ValueRefused
 from effluent.paper.manifest import render
 from effluent.settings import CAUTION
-from tests.unit.paper.sheets import CARRIER, DIGEST, LEDGER, line, pages, reading, sheet
+from tests.unit.paper.sheets import CARRIER, DIGEST, GENERATOR, LEDGER, line, pages, reading, sheet
 
 PAPERS = ("A4", "Letter")
 PURPOSE = "Working document: data for completing the official form. Not an official manifest."
@@ -76,12 +76,38 @@ def test_continuation_names_the_items_of_the_official_continuation():
         assert f"item {item})" in text
 
 
+def test_third_carrier_gets_a_continuation_with_space_to_sign():
+    carriers = (CARRIER, CARRIER, replace(CARRIER, name="Third Invented Haulage"))
+    text = pages(render(sheet(carriers=carriers)))[1]
+    assert "Carrier 3 (item 25) Third Invented Haulage" in text
+    assert "Carrier 3 (item 33)" in text
+
+
+def test_tall_row_moves_whole_to_the_next_page():
+    tall = tuple(replace(line(n), description=f"row{n} " + "invented " * 260) for n in (1, 2))
+    texts = pages(render(replace(sheet(carriers=()), lines=tall)))
+    assert [text.count("Waste lines 1 to 2") for text in texts][:2] == [1, 1]
+    assert "row2" not in texts[0]
+
+
 def test_draft_without_carriers_says_so():
     assert "Carrier 1 (item 6) not named yet" in pages(render(sheet(state="draft", carriers=())))[0]
 
 
 def test_draft_without_lines_says_so():
     assert "No waste lines" in pages(render(sheet(0, state="draft")))[0]
+
+
+def test_first_page_counts_the_rows_of_the_annexes():
+    text = pages(render(sheet(1, 3)))[0]
+    assert "A, laboratory summary, rows: 3" in text
+    assert "B, origin of the water, rows: none" in text
+
+
+def test_operator_of_any_script_is_the_author():
+    operator = "虚构航空 Łódź (x) \\ & Søn"
+    file = render(sheet(generator=replace(GENERATOR, operator=operator)))
+    assert pypdf.PdfReader(BytesIO(file)).metadata.author == operator
 
 
 def test_safety_cautions_and_the_sites_own_are_printed():
