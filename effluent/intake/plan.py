@@ -57,12 +57,9 @@ class Plan:
         Raises
         ------
         ValueRefused
-            If it is negative where nothing can be, or beyond what a double holds.
+            If it is beyond what a double holds.
         """
-        value = exact(number)
-        if value < 0 and not self.below_zero:
-            raise ValueRefused("value", number, "it is below zero; compare it with the laboratory's report")
-        return nearest(self._converted(value))
+        return nearest(self._converted(exact(number)))
 
     def _converted(self, value: Rational) -> Rational:
         if not self.canonical_unit:
@@ -108,14 +105,14 @@ class Planner:
     def _of(self, analyte: Analyte, named: Fraction | None, cell: str) -> Fraction:
         """Return the fraction from its column, else from the name, else from the layout."""
         if cell:
-            written = read_fraction(cell)
+            written = _read_fraction(cell)
             if named not in (None, written):
                 raise ValueRefused("fraction", cell, f"the analyte's name says {named}; make both agree")
             return written
         if named is not None:
             return named
         if self._fraction:
-            return read_fraction(self._fraction)
+            return _read_fraction(self._fraction)
         if analyte.group in _UNDIVIDED:
             return Fraction.TOTAL
         raise ValueRefused(
@@ -125,7 +122,7 @@ class Planner:
         )
 
 
-def read_fraction(cell: str) -> Fraction:
+def _read_fraction(cell: str) -> Fraction:
     """Return the fraction that a cell names."""
     found = _FRACTIONS.get(" ".join(cell.replace("_", " ").casefold().split()))
     if found is None:

@@ -95,6 +95,19 @@ def read_results(path: Path, layout: Layout, *, time_zone: str) -> Iterator[Resu
     return ResultReader(path, layout, time_zone=time_zone).chunks()
 
 
+def read_cells(cells: Mapping[str, str], *, time_zone: str) -> ResultChunk:
+    """Return one result whose cells are given under our own names, read as those of a file are.
+
+    Raises
+    ------
+    ValueRefused
+        If a name is not one of ours, or a required cell is not given. Bad cells are not raised.
+    """
+    layout = PLAIN.bind(cells, "the result")
+    grid = Grid({name: [cell] for name, cell in cells.items()}, [1], ["value"], [], 0, 1.0)
+    return _Reading(layout, layout.heading, Clock(zone(time_zone))).chunk(grid)
+
+
 def _open(path: Path, layout: Layout) -> Table:
     return open_table(
         path,

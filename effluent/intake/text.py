@@ -17,7 +17,7 @@ from effluent.errors import ValueRefused
 if TYPE_CHECKING:
     from _csv import Reader
 
-__all__ = ["DELIMITERS", "Batch", "TextFile", "detect_delimiter", "detect_encoding"]
+__all__ = ["DELIMITERS", "Batch", "TextFile", "detect_delimiter", "detect_encoding", "refused"]
 
 DELIMITERS = (",", ";", "\t", "|")
 _BLOCK = 1 << 20
@@ -200,10 +200,8 @@ class TextFile:
         reader = self._reader(chain(lines, handle))
         rows = []
         try:
-            for row in reader:
-                rows.append(row)
-                if reader.line_num >= len(lines):
-                    break
+            while reader.line_num < len(lines):
+                rows.append(next(reader))
         except csv.Error as error:
             raise refused(
                 self.path,

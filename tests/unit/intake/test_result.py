@@ -237,6 +237,13 @@ def test_bad_constant_is_named_as_one(read_rows):
     assert (error.column, error.value) == ("unit (constant of the mapping file)", "furlong")
 
 
+def test_constant_fills_empty_cells_of_its_column(read_rows):
+    names = ("sample", "analyte", "fraction", "value", "unit")
+    layout = Layout(columns={name: name for name in names}, constants={"unit": "mg/L"})
+    results, _ = read_rows("S-1,Cd,total,5,,,,", "S-1,Cd,total,5,ug/L,,,", layout=layout)
+    assert [result["value"] for result in results] == [5.0, 0.005]
+
+
 def test_value_is_the_double_nearest_to_the_exact_rational(read_rows):
     (result,), _ = read_rows("S-1,temperature,,98.6,°F,,,")
     exact = (Fraction("98.6") - 32) * 5 / 9

@@ -204,3 +204,64 @@ def test_workbook_cut_short_is_refused(tmp_path, share):
     path.write_bytes(path.read_bytes()[: int(path.stat().st_size * share)])
     with pytest.raises(ValueRefused, match="cut short or damaged"):
         open_table(path)
+
+
+def rewritten(folder, member, content):
+    """Return a workbook with one of its parts replaced."""
+    whole = book(folder, {"Results": [["a", "b"], ["1", "2"]]})
+    parts = {name: zipfile.ZipFile(whole).read(name) for name in zipfile.ZipFile(whole).namelist()}
+    with zipfile.ZipFile(folder / "rewritten.xlsx", "w") as archive:
+        for name, part in {**parts, member: content}.items():
+            archive.writestr(name, part)
+    return folder / "rewritten.xlsx"
+
+
+def test_workbook_whose_contents_list_is_broken_is_refused(tmp_path):
+    with pytest.raises(ValueRefused, match="not a readable workbook"):
+        open_table(rewritten(tmp_path, "xl/workbook.xml", b"<workbook"))
+
+
+def test_workbook_whose_sheet_is_broken_is_refused(tmp_path):
+    with pytest.raises(ValueRefused, match="sheet 'Results' cannot be read"):
+        open_table(rewritten(tmp_path, "xl/worksheets/sheet1.xml", b"<worksheet><sheetData><row></c>"))
+
+
+def test_duration_in_a_workbook_comes_as_text(tmp_path):
+    with xlsxwriter.Workbook(tmp_path / "results.xlsx") as workbook:
+        sheet = workbook.add_worksheet()
+        sheet.write_row(0, 0, ["a", "b"])
+        sheet.write_number(1, 0, 1.5, workbook.add_format({"num_format": "[hh]:mm:ss"}))
+    assert rows(open_table(tmp_path / "results.xlsx")) == [(2, ["1 day, 12:00:00", ""])]
+
+
+def test_sheet_with_one_column_has_no_heading_row(tmp_path):
+    with pytest.raises(ValueRefused, match="row 1 is not a heading row"):
+        open_table(book(tmp_path, {"Results": [["notes"], ["1"]]}))
+
+
+def test_line_without_end_is_refused(file):
+    write(file, "a,b\n" + "x" * 3_000_000)
+    with pytest.raises(ValueRefused, match="a line in it has no end"):
+        open_table(file)
+
+
+def test_file_that_may_not_be_read_is_refused(file, monkeypatch):
+    def deny(_):
+        raise PermissionError(13, "Permission denied")
+
+    write(file, "a,b\n")
+    monkeypatch.setattr("effluent.intake.table.is_workbook", deny)
+    with pytest.raises(ValueRefused, match="it cannot be read: Permission denied"):
+        open_table(file)
+
+
+def test_cell_that_holds_the_inner_mark_is_read_as_it_is(file):
+    write(file, "a,b\n1\x1f,2\n")
+    assert rows(open_table(file)) == [(2, ["1\x1f", "2"])]
+
+
+def test_short_quoted_rows_are_named_among_plain_ones(file):
+    write(file, 'a,b\n"1, or 2",x\n"3"\n4,"5"\n')
+    (block,) = open_table(file).blocks()
+    assert [list(column) for column in block.columns] == [["1, or 2", "4"], ["x", "5"]]
+    assert [error.row for error in block.errors] == [3]
