@@ -38,8 +38,9 @@ class Field(NamedTuple):
 
     @property
     def option(self) -> str:
-        """The option's name."""
-        return "--" + self.name.replace("_", "-")
+        """The option's name; one that is given once for each of several values is singular."""
+        name = self.name.removesuffix("s") if self.multiple else self.name
+        return "--" + name.replace("_", "-")
 
     @property
     def required(self) -> bool:
@@ -148,12 +149,12 @@ def _given(known: Collection[Field], given: Mapping[str, object]) -> dict[str, o
     }
 
 
-def build(record: type[_Record], given: Mapping[str, object]) -> _Record:
-    """Return the record that the given values make; what was not given takes its default."""
-    return record(**_given(fields(record), given))
+def build(record: type[_Record], given: Mapping[str, object], *, skip: Collection[str] = ()) -> _Record:
+    """Return the record that the given values make; what was not given, or is to skip, takes its default."""
+    return record(**_given(fields(record, skip=skip), given))
 
 
-def changes(record: type, given: Mapping[str, object]) -> dict[str, object]:
+def changes(record: type, given: Mapping[str, object], *, skip: Collection[str] = ()) -> dict[str, object]:
     """Return what an amendment changes: the given values, and the defaults of those to clear.
 
     Raises
@@ -161,7 +162,7 @@ def changes(record: type, given: Mapping[str, object]) -> dict[str, object]:
     click.UsageError
         If nothing is to change, or a field is both given and to clear.
     """
-    known = [field for field in fields(record) if field.name != "code"]
+    known = [field for field in fields(record, skip=skip) if field.name != "code"]
     changed = _given(known, given)
     cleared = cast("Collection[str]", given.get("clear") or ())
     for field in known:

@@ -63,7 +63,7 @@ def complaint(ran: Result) -> str:
 
 def test_given_options_make_the_record() -> None:
     ran = run(
-        add, "--kind", "dr", "--capacity", "208 L", "--seals", "A", "--seals", "B", "--pieces", "2", "D-1"
+        add, "--kind", "dr", "--capacity", "208 L", "--seal", "A", "--seal", "B", "--pieces", "2", "D-1"
     )
     expected = Crate(
         code="D-1", kind=ContainerKind.DRUM, capacity=Quantity("208", "L"), seals=("A", "B"), pieces=2
@@ -102,7 +102,7 @@ def test_help_says_meaning_choices_and_default() -> None:
         "--capacity QUANTITY             Nominal capacity.  [required]",
         "--fill-fraction QUANTITY        Working fill (without it: 95 %).",
         "--built-on DATE                 Day it was built.",
-        "--seals TEXT                    Seal numbers.",
+        "--seal TEXT                     Seal numbers.",
         "--pieces NUMBER                 Number of pieces.",
         "--remarks TEXT                  Remarks.",
         "--help                          Show this message and exit.",
