@@ -7,8 +7,9 @@ from collections.abc import Iterable
 from effluent.errors import Questioned
 from effluent.store.writing import Writing
 
-__all__ = ["answer"]
+__all__ = ["accepted_because", "answer"]
 
+_ACCEPTED, _QUESTIONED = "accepted: ", " (questioned: "
 _REMEDY = "check the figures; if they are right all the same, repeat with --accept and the reason"
 
 
@@ -25,4 +26,9 @@ def answer(writing: Writing, questions: Iterable[str], *, accept: str) -> None:
         return
     if not accept.strip():
         raise Questioned(asked, _REMEDY)
-    writing.explain(f"accepted: {accept.strip()} (questioned: {'; '.join(asked)})")
+    writing.explain(f"{_ACCEPTED}{accept.strip()}{_QUESTIONED}{'; '.join(asked)})")
+
+
+def accepted_because(reason: str) -> str:
+    """Return why what was questioned was accepted, out of the reason an entry kept; empty if nothing was."""
+    return reason.partition(_ACCEPTED)[2].partition(_QUESTIONED)[0]

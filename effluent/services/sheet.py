@@ -31,11 +31,12 @@ from effluent.paper.sheet import Generator, LaboratoryRow, ManifestSheet, Origin
 from effluent.reference.code import container_code, container_codes, unit_code, unit_codes
 from effluent.services.container import Origin
 from effluent.services.moment import local_day
+from effluent.services.question import accepted_because
 from effluent.services.release import Cargo, cargo_of, missing_links
 from effluent.store.ledger import Ledger
 from effluent.store.reading import Reading, Version
 
-__all__ = ["pdf", "sheet"]
+__all__ = ["check_target", "pdf", "sheet"]
 
 _BOUNDS = {
     (Bound.MAXIMUM, BrokenBy.BEYOND): "at most",
@@ -68,8 +69,7 @@ def pdf(ledger: Ledger, code: str, target: str, *, paper: str = "A4", as_of: str
     NotPrintable
         If a name holds a character that the fonts on board cannot print.
     """
-    path = Path(target)
-    _check_place(path)
+    check_target(target)
     with ledger.reading(as_of) as reading:
         latest = reading.versions("manifest", code)[-1]
         if latest.value.state is ManifestState.DRAFT:
@@ -77,7 +77,7 @@ def pdf(ledger: Ledger, code: str, target: str, *, paper: str = "A4", as_of: str
     if latest.value.state is not ManifestState.DRAFT:
         with ledger.reading(str(latest.entry.sequence)) as reading:
             worded = sheet(reading, latest.value)
-    _write(path, render(worded, paper=paper))
+    _write(Path(target), render(worded, paper=paper))
 
 
 def sheet(reading: Reading, manifest: Manifest) -> ManifestSheet:
@@ -146,7 +146,7 @@ def _line(line: ManifestLine, cargo: Cargo) -> SheetLine:
         container_word=next(code.meaning for code in container_codes() if code.code == held_in),
         quantity=int(line.quantity.magnitude),
         unit_code=unit,
-        unit_word=next(code.meaning for code in unit_codes() if code.code == unit),
+        unit_word=next(code.meaning for code in unit_codes() if code.code == unit).partition(" (")[0],
         waste_codes=tuple(line.waste_codes.split()),
         containers=(line.container,),
     )
@@ -220,28 +220,40 @@ def _state_note(reading: Reading, manifest: Manifest) -> str:
         missing = len(missing_links(reading, manifest))
         links = f"{missing} link{'s' if missing != 1 else ''}"
         return f"Cannot be issued yet: {links} of the chain missing." if missing else ""
-    reasons = [_reason(version) for version in reading.versions("manifest", manifest.code)]
-    return " ".join(reason for reason in reasons if reason)
+    said = [_said(version) for version in reading.versions("manifest", manifest.code)]
+    return " ".join(sentence for sentence in dict.fromkeys(said) if sentence)
 
 
-def _reason(version: Version) -> str:
-    """Return what the paper says of a version that issued, returned or voided the manifest."""
+def _said(version: Version) -> str:
+    """Return what the paper says of a version that issued, accepted, returned or voided the manifest."""
     manifest: Manifest = version.value
-    why = version.entry.reason
-    if manifest.state is ManifestState.ISSUED and why:
-        return f"Issued with this on record: {why}."
+    if manifest.state is ManifestState.VOID:
+        return f"Void since {version.entry.recorded_at[:10]} (UTC): {version.entry.reason}."
     if manifest.state is ManifestState.RETURNED:
         return f"Signed copy came back on {manifest.returned_on}, signed by {manifest.signed_by}."
+    if manifest.accepted_on is not None:
+        return f"The first carrier accepted the load on {manifest.accepted_on}."
+    accepted = accepted_because(version.entry.reason) if manifest.state is ManifestState.ISSUED else ""
     return (
-        f"Void since {version.entry.recorded_at[:10]}: {why}." if manifest.state is ManifestState.VOID else ""
+        f"What is over or undetermined in annex A was accepted for shipment: {accepted}." if accepted else ""
     )
 
 
-def _check_place(path: Path) -> None:
-    if path.exists():
-        raise WouldOverwrite(path)
-    if not path.absolute().parent.is_dir():
-        raise FileMissing(path.absolute().parent, "make the folder first")
+def check_target(target: str) -> None:
+    """Refuse a place where no new file can be made, before anything else is done.
+
+    Raises
+    ------
+    WouldOverwrite, FileMissing, StorageFailed
+    """
+    path = Path(target)
+    try:
+        if path.exists():
+            raise WouldOverwrite(path)
+        if not path.absolute().parent.is_dir():
+            raise FileMissing(path.absolute().parent, "make the folder first")
+    except OSError as error:
+        raise StorageFailed(path, error.strerror or str(error)) from error
 
 
 def _write(path: Path, content: bytes) -> None:
