@@ -24,6 +24,7 @@ TABLE: dict[str, tuple[str, str]] = {
     "container": ("effluent.cli.container:container", "Drums, totes, bowsers and tanks."),
     "wash": ("effluent.cli.wash:wash", "Washes: what was put in, caught and filled."),
     "sample": ("effluent.cli.sample:sample", "Samples of containers, wash streams and discharge points."),
+    "manifest": ("effluent.cli.manifest:manifest", "Manifests: the paper with which containers leave."),
     "person": ("effluent.cli.register:person", "People who record, sample, verify or approve."),
     "company": ("effluent.cli.register:company", "Carriers, receiving facilities and laboratories."),
 }
