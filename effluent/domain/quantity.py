@@ -76,7 +76,7 @@ class Quantity:
         ValueRefused
             If the text is none of these.
         """
-        match = _QUANTITY.fullmatch(written.strip())
+        match = _QUANTITY.fullmatch(written.strip()) if len(written) <= _LONGEST else None
         if match is None or (match["spread"] and match["percent"]):
             raise ValueRefused("quantity", written, _REMEDY)
         spread = match["spread"] or (f"{match['percent']} %" if match["percent"] else "")
