@@ -12,4 +12,5 @@ def test_command_reference_equals_commands():
 
 def test_every_environment_variable_is_documented():
     variables = [value for name, value in vars(settings).items() if name.endswith("_VARIABLE")]
-    assert variables and all(f"`{variable}`" in reference() for variable in variables)
+    assert variables
+    assert all(f"`{variable}`" in reference() for variable in variables)

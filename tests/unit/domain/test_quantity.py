@@ -35,7 +35,7 @@ def test_quantity_is_written_as_it_was_read(written):
 
 @pytest.mark.parametrize(
     "written",
-    ["", "L", "12,5 L", "1 2 L", "60 ± 1 L ± 2 %", "60 ± -1 L", "nan L", "1e9999 L", "0x1 L", "7" * 500],
+    ["", "L", "12,5 L", "1 2 L", "60 ± 1 L ± 2 %", "60 ± -1 L", "nan L", "7" * 500],
 )
 def test_quantity_refuses_what_is_none(written):
     with pytest.raises(ValueRefused, match=r"is not accepted"):
