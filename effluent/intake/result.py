@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Callable, Iterator, Mapping
 from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
@@ -12,13 +12,13 @@ from effluent.intake.column import column_memos
 from effluent.intake.fault import Faults
 from effluent.intake.grid import Grid, Gridder
 from effluent.intake.instant import Clock
-from effluent.intake.layout import FIELDS, Layout, zone
+from effluent.intake.layout import FIELDS, PLAIN, Layout, zone
 from effluent.intake.memo import Memo
 from effluent.intake.plan import Key, Plan, Planner
 from effluent.intake.table import Table, open_table
 from effluent.intake.value import ValueReader
 
-__all__ = ["COLUMNS", "ResultChunk", "ResultReader", "read_results"]
+__all__ = ["COLUMNS", "ResultChunk", "ResultReader", "read_cells", "read_results"]
 
 COLUMNS = (
     "sample", "analyte", "fraction", "text", "unit", "qualifier", "number", "value", "canonical_unit", "flag",
@@ -82,7 +82,7 @@ class ResultReader:
             If the file breaks off as a table. Bad cells are not raised: they stand in ``errors``.
         """
         gridder = Gridder(self.table, self.layout)
-        reading = _Reading(gridder, self.layout, self._clock)
+        reading = _Reading(gridder.heading, self.layout, self._clock)
         for grid in gridder.grids():
             yield reading.chunk(grid)
 
@@ -105,7 +105,7 @@ def read_cells(cells: Mapping[str, str], *, time_zone: str) -> ResultChunk:
     """
     layout = PLAIN.bind(cells, "the result")
     grid = Grid({name: [cell] for name, cell in cells.items()}, [1], ["value"], [], 0, 1.0)
-    return _Reading(layout, layout.heading, Clock(zone(time_zone))).chunk(grid)
+    return _Reading(str, layout, Clock(zone(time_zone))).chunk(grid)
 
 
 def _open(path: Path, layout: Layout) -> Table:
@@ -121,8 +121,8 @@ def _open(path: Path, layout: Layout) -> Table:
 class _Reading:
     """Reads grid after grid and remembers the cells it has seen."""
 
-    def __init__(self, gridder: Gridder, layout: Layout, clock: Clock) -> None:
-        self._headings = {name: gridder.heading(name) for name in FIELDS}
+    def __init__(self, heading: Callable[[str], str], layout: Layout, clock: Clock) -> None:
+        self._headings = {name: heading(name) for name in FIELDS}
         self._wide_names = frozenset(name for facts in layout.wide.values() for name in facts)
         self._memos = column_memos(layout.decimal, clock)
         self._planner = Planner(layout.constants.get("fraction", ""))
