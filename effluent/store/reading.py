@@ -175,6 +175,43 @@ class Reading:
             else {n: [] for n in names}
         )
 
+    def record_columns(
+        self, noun: str, names: Sequence[str], *, codes: Sequence[str]
+    ) -> list[tuple[Any, ...]]:
+        """Return columns of the records that stand, as stored: codes and references as their keys."""
+        table = NOUNS[noun].table
+        columns = [table.c[name] for name in names]
+        keys = [key_of(noun, code) for code in codes]
+        query = self._standing(NOUNS[noun]).where(table.c.voided == 0).with_only_columns(*columns)
+        return [
+            tuple(row)
+            for start in range(0, len(keys), _CHUNK)
+            for row in self._connection.execute(query.where(table.c.key.in_(keys[start : start + _CHUNK])))
+        ]
+
+    def latest_samples(
+        self, *, point: str | None = None, site: str | None = None, most: int
+    ) -> tuple[str, ...]:
+        """Return the samples last drawn at a point, or of caught water at a site, read before this entry."""
+        sample = NOUNS["sample"].table
+        if point is not None:
+            drawn: Any = sample.c.point == key_of("point", point)
+        else:
+            drawn = or_(
+                *(
+                    sample.c[noun].in_(
+                        select(NOUNS[noun].table.c.key).where(
+                            NOUNS[noun].table.c.site == key_of("site", site or "")
+                        )
+                    )
+                    for noun in ("container", "wash")
+                )
+            )
+        read = select(_RESULT.c.row).where(_RESULT.c.sample == sample.c.key, _RESULT.c.entry < self.as_of)
+        query = self._standing(NOUNS["sample"]).where(drawn, read.exists()).with_only_columns(sample.c.key)
+        query = query.order_by(sample.c.started_at.desc()).limit(most)
+        return tuple(key.partition("/")[2] for key in self._connection.execute(query).scalars())
+
     def near_codes(self, noun: str, code: str) -> list[str]:
         """Return codes that look like the one asked for."""
         query = select(_RECORD.c.key).where(_RECORD.c.noun == noun, _RECORD.c.entry <= self.as_of)

@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import replace
 from datetime import datetime
+from itertools import repeat
 from typing import Any
 
 from sqlalchemy import Connection, Table, func, insert, select
@@ -78,6 +79,22 @@ class Writing(Reading):
         References hold codes, as in the domain; the caller has checked that they exist.
         """
         return self._insert(table_of(ResultRow), [self._with_keys(row) for row in rows])
+
+    def add_result_columns(self, columns: Mapping[str, Sequence[Plain]]) -> int:
+        """Add results given as one sequence for each of `RESULT_COLUMNS`; return the number of the first.
+
+        References hold codes, as in the domain; the caller has checked that they exist.
+        """
+        table = table_of(ResultRow)
+        first, count = self._next_row(table), len(columns["sample"])
+        keyed = {
+            **columns,
+            "sample": [f"sample/{code}" for code in columns["sample"]],
+            "file": [None if code is None else f"file/{code}" for code in columns["file"]],
+        }
+        numbers = (range(first, first + count), repeat(self.as_of, count))
+        self._insert_whole(table, [*zip(*numbers, *(keyed[name] for name in RESULT_COLUMNS), strict=True)])
+        return first
 
     def void_result(self, number: int) -> None:
         """Withdraw a result without another in its place."""
@@ -170,13 +187,17 @@ class Writing(Reading):
     def _insert(self, table: Table, rows: Sequence[Sequence[Plain]]) -> int:
         """Insert rows given without their row number and entry; return the first row number."""
         first = self._next_row(table)
-        full = [(number, self.as_of, *row) for number, row in enumerate(rows, first)]
-        if full:
-            self._connection.exec_driver_sql(self._statement(table), full)
-            self._digests.setdefault(table.name, RowDigest()).update(full)
-            self._first_rows.setdefault(table.name, first)
-            self._next_rows[table.name] = first + len(full)
+        self._insert_whole(table, [(number, self.as_of, *row) for number, row in enumerate(rows, first)])
         return first
+
+    def _insert_whole(self, table: Table, rows: Sequence[tuple[Plain, ...]]) -> None:
+        """Insert rows that have their numbers and the entry."""
+        if rows:
+            first = self._next_row(table)
+            self._connection.exec_driver_sql(self._statement(table), list(rows))
+            self._digests.setdefault(table.name, RowDigest()).update(rows)
+            self._first_rows.setdefault(table.name, first)
+            self._next_rows[table.name] = first + len(rows)
 
     def _next_row(self, table: Table) -> int:
         if table.name not in self._next_rows:
