@@ -3,30 +3,19 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
-from datetime import date
 from typing import NamedTuple
 
 from effluent.calc.reading import Reading as LaboratoryReading
 from effluent.calc.rule import in_force
 from effluent.calc.verdict import is_computed, judge, strictest, without_reading
 from effluent.domain import Limit, Sample, Verdict
+from effluent.services.wanted import Wanted, wanted_waters
 from effluent.services.water import Water, waters
 from effluent.settings import CAUTION
 from effluent.store.ledger import Ledger
 from effluent.store.reading import Reading
 
-__all__ = ["Checked", "Unread", "Wanted", "check", "container_verdicts", "samples_of", "verdicts_for"]
-
-
-class Wanted(NamedTuple):
-    """Which samples are asked about; all that is named must hold, and days are local days of the site."""
-
-    sample: str | None = None
-    container: str | None = None
-    point: str | None = None
-    site: str | None = None
-    since: date | None = None
-    until: date | None = None
+__all__ = ["Checked", "Unread", "Wanted", "check", "container_verdicts", "verdicts_for"]
 
 
 class Unread(NamedTuple):
@@ -74,7 +63,7 @@ def check(
     """
     with ledger.reading(as_of) as reading:
         points = None if against is None else (reading.value("point", against).code,)
-        bodies = _of_days(waters(reading, samples_of(reading, wanted or Wanted()), points=points), wanted)
+        bodies = wanted_waters(reading, wanted or Wanted(), points=points)
         return _checked([_Judged.of(reading, water) for water in bodies])
 
 
@@ -94,33 +83,6 @@ def verdicts_for(
 def container_verdicts(reading: Reading, container: str) -> tuple[Verdict, ...]:
     """Return the verdicts on every sample drawn from a container."""
     return verdicts_for(reading, reading.values("sample", container=container))
-
-
-def samples_of(reading: Reading, wanted: Wanted) -> tuple[Sample, ...]:
-    """Return the samples asked for, whatever their day.
-
-    Raises
-    ------
-    RecordMissing
-        If something named is not in the ledger.
-    """
-    for noun in ("container", "point", "site"):
-        if code := getattr(wanted, noun):
-            reading.value(noun, code)
-    if wanted.sample is not None:
-        found: tuple[Sample, ...] = (reading.value("sample", wanted.sample),)
-    else:
-        named = {"container": wanted.container, "point": wanted.point}
-        found = reading.values("sample", **{noun: code for noun, code in named.items() if code})
-    found = tuple(
-        sample
-        for sample in found
-        if wanted.container in (None, sample.container) and wanted.point in (None, sample.point)
-    )
-    if wanted.site is None:
-        return found
-    inside = {s.code for water in waters(reading, found) if water.site == wanted.site for s in water.samples}
-    return tuple(sample for sample in found if sample.code in inside)
 
 
 class _Judged(NamedTuple):
@@ -159,17 +121,6 @@ def _readings(reading: Reading, water: Water) -> list[LaboratoryReading]:
             result, day=days[result.sample], late=water.is_late(samples[result.sample], result)
         )
         for result in reading.results(samples=samples)
-    ]
-
-
-def _of_days(bodies: Sequence[Water], wanted: Wanted | None) -> list[Water]:
-    first = (wanted and wanted.since) or date.min
-    last = (wanted and wanted.until) or date.max
-    kept = [(water, tuple(s for s in water.samples if first <= water.day(s) <= last)) for water in bodies]
-    return [
-        Water(water.label, samples, water.site, water.zone, water.points)
-        for water, samples in kept
-        if samples
     ]
 
 
