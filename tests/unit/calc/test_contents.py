@@ -32,6 +32,11 @@ def test_fill_after_withdrawal_is_not_thinned():
     assert held == {"DRUM": {"W1": 30, "W2": 20}}
 
 
+def test_second_withdrawal_thins_what_the_first_left():
+    held = contents([*TWO_WASHES, flow(3, 40, source="DRUM"), flow(4, 20, source="DRUM")])
+    assert held == {"DRUM": {"W1": 15, "W2": 5}}
+
+
 def test_thirds_stay_exact():
     held = contents([flow(1, 3, origin="W1", target="A"), flow(2, 1, source="A", target="B")])
     again = contents([flow(1, 7, origin="W1", target="A"), flow(2, Fraction(7, 3), source="A")])

@@ -348,6 +348,11 @@ def test_margin_is_the_share_of_the_limit_still_free(written, bound, margin):
     assert verdict.margin == (None if margin is None else pytest.approx(margin))
 
 
+def test_margin_below_zero_degrees_keeps_its_sign():
+    (verdict,) = judge([reading("-8 degC")], [limit("-10 degC", bound=Bound.MINIMUM)])
+    assert (verdict.outcome, verdict.margin) == (WITHIN, pytest.approx(0.2))
+
+
 def test_margin_of_a_limit_of_zero_is_none():
     (verdict,) = judge([reading("0.1 mg/L")], [limit("0 mg/L")])
     assert (verdict.outcome, verdict.margin) == (OVER, None)

@@ -199,6 +199,11 @@ def test_bound_on_the_open_side_of_a_minimum_is_not_shown():
     assert verdict.reason == "less than 7: whether the truth is below the limit 5.0 is not shown"
 
 
+def test_value_above_the_laboratorys_range_is_more_than_it():
+    (verdict,) = judge([reading(">0.2 mg/L")], [limit("0.11 mg/L")])
+    assert verdict.reason == "more than 0.2 mg/L is above the limit 0.11 mg/L"
+
+
 def test_other_kind_has_no_comparison():
     found = lines("10 mg/kg", "0.11 mg/L")
     assert line("conversion", found) == "conversion: none from mg/kg to mg/L"
