@@ -13,6 +13,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 from contextlib import contextmanager
 from datetime import UTC, date, datetime
+from pathlib import Path
 from typing import Any
 
 from effluent.calc.units import KINDS, canonical_unit, convert, nearest
@@ -62,13 +63,28 @@ _STANDING = (
 )
 
 
+_made: list[bytes] = []
+"""A SQLite ledger with the standing records, made once: making one takes longer than most tests."""
+
+
 @contextmanager
 def world(place: str) -> Iterator[Ledger]:
     """Make a ledger at a place with the standing records, and give it open; the clock stands at `NOW`."""
+    if "://" in place:
+        _make(place)
+    else:
+        if not _made:
+            _make(place)
+            _made.append(Path(place).read_bytes())
+        Path(place).write_bytes(_made[0])
+    with open_ledger(place, clock=lambda: NOW) as book:
+        yield book
+
+
+def _make(place: str) -> None:
     create(place, Person(code="AM", name="Ana Moreira", role="supervisor"), number="test", clock=lambda: NOW)
     with open_ledger(place, clock=lambda: NOW) as book:
         record(book, *_STANDING)
-        yield book
 
 
 def record(book: Ledger, *values: Any) -> list[str]:
