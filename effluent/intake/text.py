@@ -9,6 +9,7 @@ from collections.abc import Iterable, Iterator
 from dataclasses import dataclass
 from io import StringIO, TextIOWrapper
 from itertools import chain, islice
+from operator import methodcaller
 from pathlib import Path
 from typing import TYPE_CHECKING, NamedTuple
 
@@ -177,11 +178,10 @@ class TextFile:
             return []
         if "\r" in text:
             text = text.replace("\r\n", "\n").replace("\r", "\n")
-        text = text.removesuffix("\n")
+        lines = text.removesuffix("\n").replace(self.delimiter, _DIVIDER).split("\n")
         if '"' not in text:
-            return text.replace(self.delimiter, _DIVIDER).split("\n")
-        lines = text.split("\n")
-        quoted = [line for line in lines if '"' in line]
+            return lines
+        quoted = [line.replace(_DIVIDER, self.delimiter) for line in lines if '"' in line]
         try:
             rows = list(self._reader(quoted))
         except csv.Error:
@@ -189,7 +189,7 @@ class TextFile:
         if len(rows) != len(quoted):
             return []
         joined = map(_DIVIDER.join, rows)
-        return [next(joined) if '"' in line else line.replace(self.delimiter, _DIVIDER) for line in lines]
+        return [next(joined) if '"' in line else line for line in lines]
 
     def _reader(self, lines: Iterable[str]) -> Reader:
         return csv.reader(lines, delimiter=self.delimiter, strict=True, skipinitialspace=True)
@@ -213,7 +213,7 @@ class TextFile:
 
 def _cells(lines: list[str]) -> tuple[list[list[str]], list[list[str]]]:
     """Return divided lines as rows or, where they are of one width, as columns."""
-    counts = {line.count(_DIVIDER) for line in lines}
+    counts = set(map(methodcaller("count", _DIVIDER), lines))
     if len(counts) > 1 or counts == {0}:
         return [line.split(_DIVIDER) for line in lines], []
     width = counts.pop() + 1

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from operator import add
+from operator import add, methodcaller
 from typing import Any, NamedTuple
 
 from effluent.calc.cell import read_cell
@@ -65,10 +65,11 @@ class ValueReader:
         mark = self._decimal
         if not "".join(texts).isascii() or max(map(len, texts), default=0) > _LONGEST_PLAIN:
             return list(range(len(texts)))
+        plain = map(str.isdigit, map(methodcaller("replace", mark, "", 1), texts))
         return [
             place
-            for place, (text, flag, suffix) in enumerate(zip(texts, flags, suffixes, strict=True))
-            if flag or suffix is None or not text.replace(mark, "", 1).isdigit()
+            for place, (digits, flag, suffix) in enumerate(zip(plain, flags, suffixes, strict=True))
+            if not digits or flag or suffix is None
         ]
 
     def _add_slow(

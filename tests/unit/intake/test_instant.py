@@ -1,3 +1,5 @@
+from datetime import UTC, datetime, timedelta
+
 import pytest
 
 from effluent.errors import ValueRefused
@@ -60,3 +62,15 @@ def test_text_in_neither_format_names_both():
 def test_year_of_another_century_is_refused():
     with pytest.raises(ValueRefused, match="1950 to 2199"):
         Clock(LISBON).read("0026-07-05")
+
+
+@pytest.mark.parametrize(
+    "name", ["Europe/Lisbon", "America/New_York", "Australia/Lord_Howe", "Asia/Kathmandu"]
+)
+def test_every_half_hour_of_a_year_agrees_with_the_zone(name):
+    clock, start = Clock(zone(name)), datetime.fromisoformat("2026-01-01T00:15+00:00")
+    for half_hours in range(365 * 48):
+        instant = start + timedelta(minutes=30 * half_hours)
+        local = instant.astimezone(clock.zone)
+        if local.replace(fold=1).astimezone(UTC) == instant:
+            assert clock.read(f"{local:%Y-%m-%d %H:%M}") == f"{instant:%Y-%m-%dT%H:%M:%S.%fZ}"
