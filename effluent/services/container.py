@@ -71,7 +71,7 @@ def contents_of(reading: Reading, code: str) -> Contents:
     movements = _connected(reading, {code})
     volumes = mixing.contents(flows_of(movements.values())).get(code, {})
     washes = {wash.code: wash for wash in reading.values("wash", key=[w for w in volumes if w])}
-    origins = [_origin(reading, washes[name], volume) for name, volume in volumes.items() if volume]
+    origins = [_origin(reading, washes[name], volume) for name, volume in volumes.items() if name and volume]
     own = tuple(m for m in movements.values() if code in (m.source, m.target))
     level = sum(volumes.values(), Fraction(0))
     ordered = tuple(sorted(origins, key=lambda origin: origin.wash.performed_at))
