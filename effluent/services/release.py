@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator
+from itertools import chain
 from typing import NamedTuple
 
 from effluent.domain import Manifest, Outcome, Sample, Verdict
@@ -34,15 +35,12 @@ def cargo_of(reading: Reading, container: str) -> Cargo:
 
 
 def missing_links(reading: Reading, manifest: Manifest) -> tuple[str, ...]:
-    """Return every link that a manifest lacks before it can be issued, one sentence each."""
-    links = [*_missing_facts(manifest), *_missing_parties(reading, manifest)]
-    containers = [line.container for line in manifest.lines]
-    gone = _gone(reading, "container", containers)
-    links += [f"container {code}: its record was voided" for code in gone]
-    for code in containers:
-        if code not in gone:
-            links += _missing_of(reading, cargo_of(reading, code))
-    return tuple(links)
+    """Return every link that a manifest lacks before it can be issued, one sentence each.
+
+    Records that stand are never without those they refer to; the store sees to that.
+    """
+    of_containers = (_missing_of(reading, cargo_of(reading, line.container)) for line in manifest.lines)
+    return (*_missing_facts(manifest), *chain.from_iterable(of_containers))
 
 
 def adverse(reading: Reading, manifest: Manifest) -> tuple[str, ...]:
@@ -69,17 +67,6 @@ def _missing_facts(manifest: Manifest) -> Iterator[str]:
         yield "no carrier is named"
     if not manifest.emergency_phone:
         yield f"no emergency telephone is named, neither here nor at site {manifest.site}"
-
-
-def _missing_parties(reading: Reading, manifest: Manifest) -> list[str]:
-    parties = [*manifest.carriers, manifest.facility]
-    gone = [f"company {code}: its record was voided" for code in _gone(reading, "company", parties)]
-    return gone + [f"site {code}: its record was voided" for code in _gone(reading, "site", [manifest.site])]
-
-
-def _gone(reading: Reading, noun: str, codes: list[str]) -> list[str]:
-    standing = {value.code for value in reading.values(noun, key=codes)}
-    return [code for code in codes if code not in standing]
 
 
 def _missing_of(reading: Reading, cargo: Cargo) -> Iterator[str]:
