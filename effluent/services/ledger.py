@@ -2,23 +2,34 @@
 
 from __future__ import annotations
 
-import os
+import re
 import secrets
 from datetime import UTC, datetime
-from pathlib import Path
-from typing import NamedTuple
+from typing import Any, NamedTuple
 
 from effluent.domain import Person
-from effluent.errors import AlreadyRecorded, FileMissing, LedgerDamaged, ValueRefused, WouldOverwrite
-from effluent.store.backup import copy_ledger
-from effluent.store.database import connect, initialise, is_server, open_existing, shown
-from effluent.store.ledger import Clock, Ledger
-from effluent.store.migration import check_schema, head_revision, migrate, revision_of
-from effluent.store.reading import Entry
-from effluent.store.verify import Finding, verify
+from effluent.errors import AlreadyRecorded, LedgerDamaged, RecordMissing, ValueRefused
+from effluent.store.backup import appearing, copy_ledger
+from effluent.store.database import connect, finish, initialise, is_server, open_existing, shown
+from effluent.store.digest import read_contents
+from effluent.store.ledger import Clock, Ledger, view
+from effluent.store.migration import check_schema, head_revision, is_older, migrate, revision_of
+from effluent.store.reading import Entry, Reading
+from effluent.store.verify import Finding, number_of, verify
 from effluent.store.writing import Writing
 
-__all__ = ["Report", "backup", "create", "history", "now", "open_ledger", "prove", "restore", "upgrade"]
+__all__ = [
+    "Report",
+    "backup",
+    "brought_by",
+    "create",
+    "history",
+    "now",
+    "open_ledger",
+    "prove",
+    "restore",
+    "upgrade",
+]
 
 
 class Report(NamedTuple):
@@ -45,20 +56,17 @@ def create(place: str, person: Person, *, number: str = "", clock: Clock = now) 
     """
     number = number or secrets.token_hex(6)
     if is_server(place):
-        _create_on_server(place, person, number, clock)
+        engine = connect(place)
+        if revision_of(engine, place) is None:
+            migrate(engine, place)
+        _first_entry(Ledger(engine, place, clock=clock), person, number)
         return number
-    path = Path(place)
-    if path.exists():
-        raise WouldOverwrite(path)
-    if not path.absolute().parent.is_dir():
-        raise FileMissing(path.absolute().parent, "make the folder first")
-    unfinished = path.with_name(f".{path.name}.{os.getpid()}.new")
-    try:
-        _fill_new(str(unfinished), person, number, clock)
-        copy_ledger(str(unfinished), place)
-    finally:
-        for leftover in path.parent.glob(f"{unfinished.name}*"):
-            leftover.unlink()
+    with appearing(place) as unfinished:
+        engine = connect(str(unfinished))
+        initialise(engine, place)
+        migrate(engine, place)
+        _first_entry(Ledger(engine, place, clock=clock), person, number)
+        finish(engine, place)
     return number
 
 
@@ -76,22 +84,22 @@ def upgrade(place: str, *, backed_up: bool = False) -> tuple[str, str]:
     ------
     ValueRefused
         If the ledger is on a database server and nobody says that it was backed up.
+    LedgerDamaged
+        If the ledger does not verify; nothing is changed then.
     """
-    engine = open_existing(place)
-    found, wanted = revision_of(engine, place), head_revision()
-    if found == wanted:
+    engine, wanted = open_existing(place), head_revision()
+    if not is_older(engine, place):
         return wanted, ""
     if is_server(place):
+        copy = ""
         if not backed_up:
             raise ValueRefused(
                 "ledger", shown(place), "back it up with the server's tools, then say --backed-up"
             )
-        copy = ""
     else:
         copy = f"{place}.before-{wanted}"
-        copy_ledger(place, copy)
+        copy_ledger(place, copy, check=lambda made: _need_sound(made, place), journal="DELETE")
     migrate(engine, place)
-    engine.dispose()
     return wanted, copy
 
 
@@ -103,13 +111,9 @@ def prove(ledger: Ledger, *, witness: str = "") -> Report:
     witness : str
         ``ENTRY:DIGEST`` as printed on a page; the digest may be shortened to 12 or more characters.
     """
+    expected = _read_witness(witness) if witness else None
     with ledger.connection() as connection:
-        findings = verify(connection)
-    with ledger.reading() as reading:
-        head, number = (reading.head, reading.ledger_number) if reading.as_of else (None, "")
-        if witness and head:
-            findings = (*findings, *_against_witness(reading.entries(), witness))
-    return Report(number, head.sequence if head else 0, head.digest if head else "", findings)
+        return _report(connection, expected)
 
 
 def history(ledger: Ledger, *, as_of: str | None = None) -> tuple[Entry, ...]:
@@ -118,63 +122,76 @@ def history(ledger: Ledger, *, as_of: str | None = None) -> tuple[Entry, ...]:
         return reading.entries()
 
 
+def brought_by(entry: Entry) -> dict[str, int]:
+    """Return how many rows an entry brought to each table."""
+    return {brought.table: brought.rows for brought in read_contents(entry.contents)}
+
+
 def backup(ledger: Ledger, target: str) -> Entry:
     """Copy a ledger while it is in use; return the newest entry of the copy."""
-    copy_ledger(ledger.place, target)
+    copy_ledger(ledger.place, target, journal="DELETE")
     with open_ledger(target) as copy:
         return copy.head()
 
 
 def restore(source: str, target: str) -> Report:
-    """Verify a backup and put a copy of it in a new place.
+    """Put a copy of a backup in a new place, if the copy verifies.
 
     Raises
     ------
     LedgerDamaged
-        If the backup does not verify; nothing is restored then.
+        If it does not verify; nothing is restored then.
     """
-    with open_ledger(source) as ledger:
-        report = prove(ledger)
+    if not is_server(source):
+        is_older(open_existing(source), source)
+    reports: list[Report] = []
+    copy_ledger(source, target, check=lambda made: reports.append(_need_sound(made, source)))
+    return reports[0]
+
+
+def _need_sound(copy: str, place: str) -> Report:
+    engine = connect(copy)
+    older = is_older(engine, place)
+    with Ledger(engine, place, clock=now).connection() as connection:
+        report = _report(connection, older=older)
     if report.findings:
-        raise LedgerDamaged(source, f"it does not verify: {report.findings[0]}")
-    copy_ledger(source, target)
+        raise LedgerDamaged(place, f"it does not verify: {report.findings[0]}")
     return report
 
 
-def _create_on_server(place: str, person: Person, number: str, clock: Clock) -> None:
-    engine = connect(place)
-    if revision_of(engine, place) is not None:
-        raise AlreadyRecorded(f"a ledger in {shown(place)}", "name another database")
-    migrate(engine, place)
-    with Ledger(engine, place, clock=clock) as ledger:
-        _first_entry(ledger, person, number)
-
-
-def _fill_new(place: str, person: Person, number: str, clock: Clock) -> None:
-    engine = connect(place)
-    initialise(engine, place)
-    migrate(engine, place)
-    with Ledger(engine, place, clock=clock) as ledger:
-        _first_entry(ledger, person, number)
+def _report(connection: Any, witness: tuple[int, str] | None = None, *, older: bool = False) -> Report:
+    findings = verify(connection, older=older)
+    reading = view(connection)
+    if witness:
+        findings = (*findings, *_against_witness(reading, *witness))
+    digest = reading.head.digest if reading.as_of else ""
+    return Report(number_of(connection), reading.as_of, digest, findings)
 
 
 def _first_entry(ledger: Ledger, person: Person, number: str) -> None:
     def job(writing: Writing) -> None:
+        if writing.as_of > 1:
+            raise AlreadyRecorded(f"a ledger in {shown(ledger.place)}", "name another database")
         writing.number_ledger(number)
         writing.record(person)
 
     ledger.write(job, by=person.code, action="create ledger")
 
 
-def _against_witness(entries: tuple[Entry, ...], witness: str) -> tuple[Finding, ...]:
-    sequence, _, digest = witness.partition(":")
-    if not sequence.isdecimal() or len(digest) < 12:
+def _read_witness(witness: str) -> tuple[int, str]:
+    sequence, _, digest = witness.strip().partition(":")
+    if not re.fullmatch("[0-9]{1,18}", sequence) or not re.fullmatch("[0-9a-fA-F]{12,64}", digest):
         raise ValueRefused(
             "witness", witness, "write ENTRY:DIGEST as printed, at least 12 characters of the digest"
         )
-    number = int(sequence)
-    if not 1 <= number <= len(entries):
-        return (Finding(number, "missing entry", "a page witnesses it"),)
-    if not entries[number - 1].digest.startswith(digest.lower()):
-        return (Finding(number, "changed entry", "its digest is not the one on the page"),)
+    return int(sequence), digest.lower()
+
+
+def _against_witness(reading: Reading, sequence: int, digest: str) -> tuple[Finding, ...]:
+    try:
+        entry = reading.entry(sequence)
+    except RecordMissing:
+        return (Finding(sequence, "missing entry", "a page witnesses it"),)
+    if not entry.digest.startswith(digest):
+        return (Finding(sequence, "changed entry", "its digest is not the one on the page"),)
     return ()

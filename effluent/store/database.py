@@ -5,12 +5,13 @@ from __future__ import annotations
 import os
 import re
 import sqlite3
+import stat
 from collections.abc import Iterator
 from contextlib import contextmanager
 from pathlib import Path
 from typing import Any
 
-from sqlalchemy import Connection, Engine, create_engine, event
+from sqlalchemy import URL, Connection, Engine, create_engine, event
 from sqlalchemy.engine import make_url
 from sqlalchemy.exc import ArgumentError, DBAPIError, NoSuchModuleError
 from sqlalchemy.pool import NullPool
@@ -24,10 +25,21 @@ from effluent.errors import (
     StorageFailed,
     StoreError,
     ValueRefused,
+    WouldOverwrite,
 )
 from effluent.store.base import APPLICATION_ID
 
-__all__ = ["connect", "initialise", "is_server", "open_existing", "shown", "translated", "writes"]
+__all__ = [
+    "connect",
+    "finish",
+    "initialise",
+    "is_server",
+    "open_existing",
+    "refuse_taken",
+    "shown",
+    "translated",
+    "writes",
+]
 
 BUSY_TIMEOUT_MS = 5_000
 _SQLITE_HEADER = b"SQLite format 3\0"
@@ -35,13 +47,25 @@ _MEANINGS: tuple[tuple[str, type[StoreError]], ...] = (
     ("locked", LedgerBusy),
     ("busy", LedgerBusy),
     ("not a database", NotALedger),
+    ("already exists", NotALedger),
     ("malformed", LedgerDamaged),
     ("disk image", LedgerDamaged),
+    ("decode to utf-8", LedgerDamaged),
+    ("no such table", LedgerDamaged),
+    ("no such column", LedgerDamaged),
+    ("unsupported file format", LedgerDamaged),
     ("disk is full", StorageFailed),
+    ("no space left", StorageFailed),
     ("disk i/o", StorageFailed),
     ("readonly", StorageFailed),
+    ("read-only", StorageFailed),
+    ("permission denied", StorageFailed),
     ("unable to open", StorageFailed),
 )
+_REMEDIES = {
+    "not a database": "name the file that `effluent ledger create` made",
+    "already exists": "it holds other tables; name an empty database",
+}
 
 
 def is_server(place: str) -> bool:
@@ -82,11 +106,32 @@ def open_existing(place: str) -> Engine:
     return connect(place)
 
 
+def refuse_taken(path: Path) -> None:
+    """Refuse a place where a new file cannot be put.
+
+    Raises
+    ------
+    WouldOverwrite, FileMissing
+        If something is there, or the folder is not.
+    """
+    if os.path.lexists(path):
+        raise WouldOverwrite(path)
+    if not os.path.isdir(path.absolute().parent):
+        raise FileMissing(path.absolute().parent, "make the folder first")
+
+
 def initialise(engine: Engine, place: str) -> None:
     """Mark a new SQLite file as a ledger."""
     with translated(place), engine.connect() as connection:
         connection.exec_driver_sql(f"PRAGMA application_id = {APPLICATION_ID}")
         connection.commit()
+
+
+def finish(engine: Engine, place: str) -> None:
+    """Let a new SQLite file be read while it is written, once all is in it."""
+    with translated(place), engine.connect() as connection:
+        connection.rollback()
+        connection.connection.cursor().execute("PRAGMA journal_mode = WAL")
 
 
 def writes(connection: Connection) -> Connection:
@@ -118,31 +163,35 @@ def _meaning_of(place: str, message: str) -> Exception:
     lowered = message.lower()
     for phrase, kind in _MEANINGS:
         if phrase in lowered:
-            remedy = "name the file that `effluent ledger create` made"
-            return kind(shown(place), remedy if kind is NotALedger else message)
+            return kind(shown(place), _REMEDIES.get(phrase, message))
     return sqlite3.DatabaseError(message)
 
 
 def _refuse_other_files(path: Path) -> None:
     create = f"make one with: effluent ledger create --ledger {path}"
-    if not path.exists():
-        raise FileMissing(path, create)
-    if path.is_dir():
-        raise NotALedger(path, "it is a folder; name the ledger file in it")
     try:
-        with path.open("rb") as file:
-            header = file.read(72)
+        if path.is_dir():
+            raise NotALedger(path, "it is a folder; name the ledger file in it")
+        header = _header(path)
+    except (FileNotFoundError, NotADirectoryError) as error:
+        raise FileMissing(path, create) from error
     except OSError as error:
         raise StorageFailed(path, error.strerror or "cannot be read") from error
     if not header.startswith(_SQLITE_HEADER) or int.from_bytes(header[68:72], "big") != APPLICATION_ID:
         raise NotALedger(path, f"name the ledger file, or {create}")
 
 
+def _header(path: Path) -> bytes:
+    """Return the beginning of a file; a pipe or device has none, and would keep us waiting."""
+    if not stat.S_ISREG(path.stat().st_mode):
+        return b""
+    with path.open("rb") as file:
+        return file.read(72)
+
+
 def _sqlite(place: str) -> Engine:
-    path = Path(place)
-    if not path.parent.is_dir():
-        raise FileMissing(path.parent, "make the folder first")
-    engine = create_engine(f"sqlite:///{os.fspath(path.absolute())}", poolclass=NullPool)
+    url = URL.create("sqlite", database=os.fspath(Path(place).absolute()))
+    engine = create_engine(url, poolclass=NullPool)
     event.listen(engine, "connect", _set_up)
     event.listen(engine, "begin", _begin)
     return engine

@@ -20,7 +20,7 @@ from effluent.store.noun import table_of
 from effluent.store.reading import Entry, Reading
 from effluent.store.writing import Writing
 
-__all__ = ["Clock", "Ledger"]
+__all__ = ["Clock", "Ledger", "view"]
 
 T = TypeVar("T")
 Clock = Callable[[], datetime]
@@ -68,7 +68,7 @@ class Ledger:
     def reading(self, as_of: str | None = None) -> Iterator[Reading]:
         """Open a consistent view, of now or as of an entry number, a date (UTC) or an instant."""
         with self.connection() as connection:
-            yield Reading(connection, _sequence(connection, as_of))
+            yield view(connection, as_of)
 
     def write(self, job: Callable[[Writing], T], *, by: str, action: str, reason: str = "") -> T:
         """Run a job that adds to the ledger, as one entry, and return what it returns.
@@ -105,6 +105,11 @@ class Ledger:
         """Return the newest entry."""
         with self.reading() as reading:
             return reading.head
+
+
+def view(connection: Connection, as_of: str | None = None) -> Reading:
+    """Return what a connection's transaction sees, of now or as of a moment."""
+    return Reading(connection, _sequence(connection, as_of))
 
 
 def _sequence(connection: Connection, as_of: str | None) -> int:

@@ -13,7 +13,7 @@ from sqlalchemy import Engine, text
 from effluent.errors import LedgerDamaged, NotALedger, SchemaNewer, SchemaOlder
 from effluent.store.database import is_server, shown, translated, writes
 
-__all__ = ["check_schema", "head_revision", "known_revisions", "migrate", "revision_of"]
+__all__ = ["check_schema", "head_revision", "is_older", "known_revisions", "migrate", "revision_of"]
 
 
 def _config() -> Config:
@@ -54,14 +54,23 @@ def check_schema(engine: Engine, place: str) -> None:
     ------
     NotALedger, SchemaOlder, SchemaNewer
     """
+    if is_older(engine, place):
+        raise SchemaOlder(shown(place), revision_of(engine, place), head_revision())
+
+
+def is_older(engine: Engine, place: str) -> bool:
+    """Tell whether a ledger's schema is an earlier one than this version writes.
+
+    Raises
+    ------
+    NotALedger, SchemaNewer
+    """
     found = revision_of(engine, place)
-    wanted = head_revision()
     if found is None:
         raise NotALedger(shown(place), "it holds no ledger; make one with: effluent ledger create")
-    if found != wanted:
-        if found in known_revisions():
-            raise SchemaOlder(shown(place), found, wanted)
+    if found not in known_revisions():
         raise SchemaNewer(shown(place), found)
+    return found != head_revision()
 
 
 def migrate(engine: Engine, place: str, revision: str = "head") -> None:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from bisect import bisect_left, bisect_right
-from collections.abc import Iterable, Iterator, Sequence
+from collections.abc import Callable, Iterable, Iterator, Sequence
 from itertools import permutations
 from typing import Any, NamedTuple
 
@@ -48,7 +48,7 @@ class Rows:
     def __init__(self, connection: Connection, table: str) -> None:
         query = f'SELECT * FROM "{table}" ORDER BY "row"'  # noqa: S608
         self.table = table
-        self._cursor = connection.execution_options(stream_results=True).exec_driver_sql(query).cursor
+        self._fetch = _fetching(connection, query)
         self._held: Sequence[Row] = []
         self._at = 0
 
@@ -62,9 +62,19 @@ class Rows:
             yield self._held[start:cut]
 
     def _fill(self) -> bool:
-        if self._at == len(self._held) and self._cursor is not None:
-            self._held, self._at = self._cursor.fetchmany(_CHUNK), 0
+        if self._at == len(self._held):
+            self._held, self._at = self._fetch(_CHUNK), 0
         return self._at < len(self._held)
+
+
+def _fetching(connection: Connection, query: str) -> Callable[[int], Sequence[Row]]:
+    """Return what fetches the next rows; SQLite's own cursor does it at half the cost."""
+    if connection.dialect.name == "sqlite":
+        cursor = connection.connection.cursor()
+        cursor.execute(query)
+        return cursor.fetchmany
+    result = connection.exec_driver_sql(query, execution_options={"stream_results": True})
+    return lambda size: [tuple(row) for row in result.fetchmany(size)]
 
 
 class _Strays:

@@ -6,13 +6,13 @@ from collections.abc import Iterator, Mapping
 
 from sqlalchemy import Connection, inspect, select, text
 
-from effluent.store.base import Base, EntryRow
+from effluent.store.base import Base, EntryRow, LedgerRow
 from effluent.store.digest import GENESIS, contents_text, entry_digest, read_contents
 from effluent.store.noun import table_of
 from effluent.store.reading import Entry
 from effluent.store.span import Finding, Rows, Span, check_spans
 
-__all__ = ["Finding", "verify"]
+__all__ = ["Finding", "number_of", "verify"]
 
 _ENTRY = table_of(EntryRow)
 _KINDS = (  # what is named first when an entry has several faults
@@ -53,6 +53,13 @@ def verify(connection: Connection, *, older: bool = False) -> tuple[Finding, ...
     return tuple(sorted(set(findings), key=_urgency))
 
 
+def number_of(connection: Connection) -> str:
+    """Return the ledger's number, or nothing where even that is gone."""
+    ledger = table_of(LedgerRow)
+    found = connection.execute(select(ledger.c.number).order_by(ledger.c.row).limit(1)).scalar()
+    return str(found or "")
+
+
 def _urgency(finding: Finding) -> tuple[bool, int, int, str]:
     rank = _KINDS.index(finding.kind) if finding.kind in _KINDS else len(_KINDS)
     return finding.entry == 0, finding.entry, rank, finding.detail
@@ -86,7 +93,7 @@ def _check_entries(entries: list[Entry]) -> Iterator[Finding]:
             for missing in range(expected, min(entry.sequence, expected + 10)):
                 yield Finding(missing, "missing entry", f"after the gap comes entry {entry.sequence}")
         elif entry.sequence < expected:
-            yield Finding(entry.sequence, "changed entry", "entries are numbered from 1")
+            yield Finding(0, "changed entry", f"one is numbered {entry.sequence}")
         elif entry.previous_digest != previous:
             yield _out_of_line(entry, by_digest)
         yield from _check_header(entry)
