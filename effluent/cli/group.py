@@ -17,6 +17,7 @@ TABLE: dict[str, tuple[str, str]] = {
         "effluent.cli.trace:trace",
         "Walk the chain from any record to the nozzle and to the manifest.",
     ),
+    "ledger": ("effluent.cli.ledger:ledger", "The ledger itself: make, verify, copy and upgrade it."),
     "site": ("effluent.cli.register:site", "Sites: where engines are washed and water is held."),
     "point": ("effluent.cli.register:point", "Discharge points: where water may leave a site."),
     "engine": ("effluent.cli.register:engine", "Engines that are washed."),
