@@ -11,11 +11,12 @@ from typing import NamedTuple
 
 from effluent.domain import Manifest, ManifestLine, ManifestState
 from effluent.errors import ChainBroken, FileMissing, RecordMissing, StateRefused, ValueRefused
+from effluent.services.container import contents_of
 from effluent.services.load import doubts, prepared
 from effluent.services.moment import local_day
 from effluent.services.question import answer
 from effluent.services.register import need_reason
-from effluent.services.release import adverse, missing_links
+from effluent.services.release import adverse, filled_at, missing_links
 from effluent.store.ledger import Ledger
 from effluent.store.reading import Reading, Version
 from effluent.store.writing import Writing
@@ -162,6 +163,7 @@ def issue(ledger: Ledger, code: str, *, by: str, on: date | None = None, accept:
         if missing := missing_links(writing, manifest):
             raise ChainBroken(f"issuing manifest {code}", missing)
         day = _day(writing, manifest, on, ledger.clock())
+        _check_filled_before(writing, manifest, day)
         ready = prepared(writing, manifest)
         answer(writing, (*doubts(writing, ready), *adverse(writing, ready)), accept=accept)
         writing.amend(replace(ready, state=ManifestState.ISSUED, issued_on=day))
@@ -285,6 +287,15 @@ def _day(reading: Reading, manifest: Manifest, on: date | None, now: datetime) -
     if on is not None and on > today:
         raise ValueRefused("day", on.isoformat(), f"it lies in the future; at the site it is {today}")
     return on or today
+
+
+def _check_filled_before(reading: Reading, manifest: Manifest, day: date) -> None:
+    site = reading.value("site", manifest.site)
+    for line in manifest.lines:
+        last = filled_at(contents_of(reading, line.container))
+        if last is not None and local_day(last, site) > day:
+            remedy = f"water went into container {line.container} on {local_day(last, site)}"
+            raise ValueRefused("day", day.isoformat(), remedy)
 
 
 def _after_issue(reading: Reading, manifest: Manifest, on: date, now: datetime) -> date:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator
+from datetime import datetime
 from itertools import chain
 from typing import NamedTuple
 
@@ -11,7 +12,7 @@ from effluent.services.check import verdicts_for
 from effluent.services.container import Contents, contents_of
 from effluent.store.reading import Reading
 
-__all__ = ["Cargo", "adverse", "cargo_of", "missing_links"]
+__all__ = ["Cargo", "adverse", "cargo_of", "filled_at", "missing_links"]
 
 _OPEN = (Outcome.OVER, Outcome.UNDETERMINED)
 
@@ -32,6 +33,12 @@ def cargo_of(reading: Reading, container: str) -> Cargo:
     contents = contents_of(reading, container)
     samples = _speaking(contents, reading.values("sample", container=container))
     return Cargo(contents, samples, verdicts_for(reading, samples))
+
+
+def filled_at(contents: Contents) -> datetime | None:
+    """Return when water last went into a container; ``None`` says never."""
+    fills = [each.moved_at for each in contents.movements if each.target == contents.container.code]
+    return max(fills, default=None)
 
 
 def missing_links(reading: Reading, manifest: Manifest) -> tuple[str, ...]:
@@ -55,9 +62,8 @@ def adverse(reading: Reading, manifest: Manifest) -> tuple[str, ...]:
 
 
 def _speaking(contents: Contents, samples: Iterable[Sample]) -> tuple[Sample, ...]:
-    code = contents.container.code
-    fills = [movement.moved_at for movement in contents.movements if movement.target == code]
-    return tuple(sample for sample in samples if fills and sample.started_at > max(fills))
+    last = filled_at(contents)
+    return tuple(sample for sample in samples if last is not None and sample.started_at > last)
 
 
 def _missing_facts(manifest: Manifest) -> Iterator[str]:
