@@ -3,12 +3,13 @@
 from __future__ import annotations
 
 import json
-import sqlite3
 from collections.abc import Callable, Iterator
-from contextlib import closing, contextmanager
+from contextlib import contextmanager
 from datetime import UTC, datetime, timedelta
 from itertools import count
 from typing import Any
+
+from sqlalchemy import Connection, CursorResult
 
 from effluent.domain import (
     Company,
@@ -25,7 +26,6 @@ from effluent.domain import (
     Site,
 )
 from effluent.services.ledger import create, open_ledger
-from effluent.store.database import is_server
 from effluent.store.digest import RowDigest, entry_digest
 from effluent.store.ledger import Ledger
 from effluent.store.writing import Writing
@@ -96,58 +96,76 @@ def filled_ledger(place: str) -> Ledger:
     return ledger
 
 
+Run = Callable[[str], list[tuple[Any, ...]]]
+
+
 @contextmanager
-def unguarded(place: str) -> Iterator[Callable[[str], list[tuple[Any, ...]]]]:
-    """Give a way to run any statement; the triggers are back afterwards, as if nothing had been."""
-    if is_server(place):
-        with _unguarded_server(place) as run:
-            yield run
+def unguarded(ledger: Ledger) -> Iterator[tuple[Connection, Run]]:
+    """Give a transaction that may change anything, and a way to run a statement in it.
+
+    `guard` puts the triggers back, as if nothing had been; what is not committed is rolled back.
+    """
+    with ledger._engine.connect() as connection:
+        if connection.dialect.name == "sqlite":
+            connection.connection.cursor().execute("PRAGMA foreign_keys = OFF")
+        _unguard(connection)
+        yield connection, lambda statement: _rows(connection.exec_driver_sql(statement))
+        connection.rollback()
+
+
+def _rows(result: CursorResult[Any]) -> list[tuple[Any, ...]]:
+    return [tuple(row) for row in result] if result.returns_rows else []
+
+
+def _unguard(connection: Connection) -> None:
+    if connection.dialect.name != "sqlite":
+        connection.exec_driver_sql("SET LOCAL session_replication_role = replica")
         return
-    with closing(sqlite3.connect(place, isolation_level=None)) as raw:
-        guards = raw.execute("SELECT name, sql FROM sqlite_master WHERE type = 'trigger'").fetchall()
-        for name, _ in guards:
-            raw.execute(f'DROP TRIGGER "{name}"')
-        yield lambda statement: raw.execute(statement).fetchall()
-        for _, definition in guards:
-            raw.execute(definition)
+    query = "SELECT name, sql FROM sqlite_master WHERE type = 'trigger'"
+    connection.info["guards"] = connection.exec_driver_sql(query).all()
+    for name, _ in connection.info["guards"]:
+        connection.exec_driver_sql(f'DROP TRIGGER "{name}"')
 
 
-@contextmanager
-def _unguarded_server(place: str) -> Iterator[Callable[[str], list[tuple[Any, ...]]]]:
-    import psycopg
-
-    with psycopg.connect(place.replace("+psycopg", ""), autocommit=True) as raw:
-        raw.execute("SET session_replication_role = replica")
-
-        def run(statement: str) -> list[tuple[Any, ...]]:
-            cursor = raw.execute(statement)
-            return cursor.fetchall() if cursor.description else []
-
-        yield run
+def guard(connection: Connection) -> None:
+    if connection.dialect.name != "sqlite":
+        connection.exec_driver_sql("SET LOCAL session_replication_role = origin")
+        return
+    for _, definition in connection.info["guards"]:
+        connection.exec_driver_sql(definition)
 
 
-def tamper(place: str, *statements: str) -> None:
-    with unguarded(place) as run:
+def tamper(ledger: Ledger, *statements: str) -> None:
+    """Change a ledger for good."""
+    with unguarded(ledger) as (connection, run):
         for statement in statements:
             run(statement)
+        guard(connection)
+        connection.commit()
 
 
-def forge(place: str, statement: str) -> None:
+def forge(ledger: Ledger, statement: str) -> None:
     """Change the ledger and compute every digest anew, as somebody would who knows how."""
-    with unguarded(place) as run:
+    with unguarded(ledger) as (connection, run):
         run(statement)
-        previous = "0" * 64
-        for entry in run("SELECT * FROM entry ORDER BY sequence"):
-            parts = [_digested(run, *part) for part in json.loads(entry[5])]
-            header = [*entry[:5], json.dumps(parts, separators=(",", ":")), previous]
-            previous = entry_digest(header)
-            run(
-                f"UPDATE entry SET contents = '{header[5]}', previous_digest = '{header[6]}', "
-                f"digest = '{previous}' WHERE sequence = {entry[0]}"
-            )
+        _digest_anew(run)
+        guard(connection)
+        connection.commit()
 
 
-def _digested(run: Any, table: str, first: int, rows: int, columns: int, _old: str) -> list[Any]:
+def _digest_anew(run: Run) -> None:
+    previous = "0" * 64
+    for entry in run("SELECT * FROM entry ORDER BY sequence"):
+        parts = [_digested(run, *part) for part in json.loads(entry[5])]
+        header = [*entry[:5], json.dumps(parts, separators=(",", ":")), previous]
+        previous = entry_digest(header)
+        run(
+            f"UPDATE entry SET contents = '{header[5]}', previous_digest = '{header[6]}', "
+            f"digest = '{previous}' WHERE sequence = {entry[0]}"
+        )
+
+
+def _digested(run: Run, table: str, first: int, rows: int, columns: int, _old: str) -> list[Any]:
     digest = RowDigest()
     last = first + rows - 1
     digest.update(run(f'SELECT * FROM "{table}" WHERE "row" BETWEEN {first} AND {last} ORDER BY "row"'))

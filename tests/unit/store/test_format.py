@@ -64,8 +64,8 @@ def test_intact_ledger_holds(check: Path, ledger: str) -> None:
 
 @pytest.mark.parametrize("name", TAMPERINGS)
 def test_script_and_verify_agree_on_tampering(check: Path, ledger: str, name: str) -> None:
-    tamper(ledger, *TAMPERINGS[name][0])
     with open_ledger(ledger) as opened:
+        tamper(opened, *TAMPERINGS[name][0])
         assert prove(opened).findings
     status, said = answer(check, ledger)
     assert status == 1
@@ -73,21 +73,20 @@ def test_script_and_verify_agree_on_tampering(check: Path, ledger: str, name: st
 
 
 def test_recomputed_tail_is_caught_by_a_witness(check: Path, ledger: str) -> None:
-    with open_ledger(ledger) as opened:
-        page = opened.head()
+    opened = open_ledger(ledger)
+    page = opened.head()
     witness = f"{page.sequence}:{page.digest[:12]}"
     assert answer(check, ledger, witness) == (0, "everything holds\n")
-    forge(ledger, "UPDATE result SET text = '0.01' WHERE \"row\" = 2")
+    forge(opened, "UPDATE result SET text = '0.01' WHERE \"row\" = 2")
     assert answer(check, ledger) == (0, "everything holds\n")
     assert answer(check, ledger, witness) == (1, "entry 7 is not the one that the page shows\n")
 
 
 def test_cut_tail_is_caught_by_a_witness(check: Path, ledger: str) -> None:
-    with open_ledger(ledger) as opened:
-        page = opened.head()
-    tamper(ledger, "DELETE FROM result WHERE entry = 7", "DELETE FROM entry WHERE sequence = 7")
+    opened = open_ledger(ledger)
+    page = opened.head()
+    tamper(opened, "DELETE FROM result WHERE entry = 7", "DELETE FROM entry WHERE sequence = 7")
     assert answer(check, ledger)[0] == 0
     assert answer(check, ledger, f"7:{page.digest}")[0] == 1
-    with open_ledger(ledger) as opened:
-        assert prove(opened).findings == ()
-        assert prove(opened, witness=f"7:{page.digest}").findings[0].kind == "missing entry"
+    assert prove(opened).findings == ()
+    assert prove(opened, witness=f"7:{page.digest}").findings[0].kind == "missing entry"
