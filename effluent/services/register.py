@@ -7,7 +7,7 @@ from dataclasses import replace
 from typing import Any, NamedTuple
 from zoneinfo import ZoneInfo, ZoneInfoNotFoundError
 
-from effluent.calc.plausible import read_ratio
+from effluent.calc.mixture import read_ratio
 from effluent.calc.units import canonical
 from effluent.domain import Cleaner, CleanerForm, Container, Quantity, Site
 from effluent.errors import ValueRefused

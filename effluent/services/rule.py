@@ -6,7 +6,7 @@ from collections.abc import Iterator
 from fractions import Fraction
 
 from effluent.calc.balance import balance
-from effluent.calc.plausible import ratio_question
+from effluent.calc.mixture import ratio_question
 from effluent.calc.units import canonical
 from effluent.domain import Cleaner, CleanerForm, Quantity, RunningMode, Wash, WashKind
 from effluent.errors import ValueRefused
