@@ -228,8 +228,7 @@ def _taken_over(published: ReferenceLimit, adoption: Adoption, authority: str, b
         "value": published.value,
         "broken_by": published.broken_by,
         "authority": authority,
-        "document": published.source.citation,
-        "written_at": published.source.edition,
+        "document": f"{published.source.citation}, {published.source.edition}",
         **adoption.changes,
     }
     if not fields["authority"]:
