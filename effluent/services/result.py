@@ -2,12 +2,17 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
+from dataclasses import fields
+from datetime import date
+from pathlib import Path
 from typing import NamedTuple
+from zoneinfo import ZoneInfo
 
 from effluent.domain import Result, Sample
 from effluent.errors import FileRefused, RowError, ValueRefused
 from effluent.intake.result import ResultChunk, read_cells
+from effluent.intake.sheet import write_csv, write_xlsx
 from effluent.reference.analyte import find
 from effluent.services.batch import Batch
 from effluent.services.importing import Imported, import_files
@@ -15,10 +20,11 @@ from effluent.services.receiving import Receiving
 from effluent.services.register import need_reason
 from effluent.services.wanted import Wanted, wanted_waters
 from effluent.services.water import Water, site_of
+from effluent.store.column import Plain, plain
 from effluent.store.ledger import Ledger
 from effluent.store.writing import Writing
 
-__all__ = ["Imported", "Listed", "enter", "import_files", "listing", "void"]
+__all__ = ["Imported", "Listed", "enter", "export", "import_files", "listing", "void"]
 
 
 class Listed(NamedTuple):
@@ -27,6 +33,18 @@ class Listed(NamedTuple):
     result: Result
     sample: Sample
     late: bool
+    zone: ZoneInfo
+
+    @property
+    def drawn_on(self) -> date:
+        """The local day on which drawing the sample began."""
+        return self.sample.started_at.astimezone(self.zone).date()
+
+    @property
+    def analysed_on(self) -> date | None:
+        """The local day of the analysis, if it is known."""
+        at = self.result.analysed_at
+        return None if at is None else at.astimezone(self.zone).date()
 
 
 def enter(ledger: Ledger, cells: Mapping[str, str], *, by: str, reason: str = "", accept: str = "") -> int:
@@ -112,7 +130,7 @@ def listing(
 
 
 def _listed(result: Result, water: Water, sample: Sample) -> Listed:
-    return Listed(result, sample, water.is_late(sample, result))
+    return Listed(result, sample, water.is_late(sample, result), water.zone)
 
 
 def _zone(writing: Writing, code: str) -> str:
@@ -132,3 +150,25 @@ def _plainly(rows: tuple[RowError, ...]) -> Exception:
     if len(rows) != 1:
         return FileRefused("the result", rows)
     return ValueRefused(rows[0].column.replace("_", " "), rows[0].value, rows[0].reason)
+
+
+def export(found: Sequence[Listed], path: Path, *, as_workbook: bool) -> None:
+    """Write results to a new file for a spreadsheet program; no cell runs as a formula.
+
+    Raises
+    ------
+    WouldOverwrite
+        If the file exists.
+    FileMissing, StorageFailed
+        If its folder is not there, or it cannot be written.
+    """
+    write = write_xlsx if as_workbook else write_csv
+    write(path, ("result", *_EXPORTED, "drawn_at", "outside_holding_time"), map(_cells, found))
+
+
+def _cells(each: Listed) -> list[Plain]:
+    cells = [plain(getattr(each.result, name)) for name in _EXPORTED]
+    return [each.result.row, *cells, plain(each.sample.started_at), "yes" if each.late else "no"]
+
+
+_EXPORTED = tuple(field.name for field in fields(Result) if field.name != "row")
