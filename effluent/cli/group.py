@@ -25,6 +25,12 @@ TABLE: dict[str, tuple[str, str]] = {
     "container": ("effluent.cli.container:container", "Drums, totes, bowsers and tanks."),
     "wash": ("effluent.cli.wash:wash", "Washes: what was put in, caught and filled."),
     "sample": ("effluent.cli.sample:sample", "Samples of containers, wash streams and discharge points."),
+    "result": ("effluent.cli.result:result", "Laboratory results: read from files or entered by hand."),
+    "limit": ("effluent.cli.limit:limit", "Discharge limits, each with its source."),
+    "check": (
+        "effluent.cli.check:check",
+        "Hold results against limits and say within, near, over or undetermined.",
+    ),
     "manifest": ("effluent.cli.manifest:manifest", "Manifests: the paper with which containers leave."),
     "person": ("effluent.cli.register:person", "People who record, sample, verify or approve."),
     "company": ("effluent.cli.register:company", "Carriers, receiving facilities and laboratories."),
