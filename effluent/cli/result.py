@@ -21,7 +21,7 @@ if TYPE_CHECKING:
     from effluent.services.wanted import Wanted
     from effluent.store.ledger import Ledger
 
-__all__ = ["result", "wanted_from", "wanted_options"]
+__all__ = ["progress_bar", "result", "wanted_from", "wanted_options"]
 
 _Body = TypeVar("_Body", bound=Callable[..., Any])
 _NEEDED = ("sample", "analyte", "value")
@@ -94,7 +94,7 @@ def _import(book: Ledger, order: Order, given: dict[str, Any]) -> None:
     from effluent.services.importing import import_files
 
     reason, accept = given["reason"] or "", given["accept"] or ""
-    with _progress() as progress:
+    with progress_bar() as progress:
         imported = import_files(book, order, by=given["by"], reason=reason, accept=accept, progress=progress)
     if given["as_json"]:
         show.document(_imported_document(imported))
@@ -103,7 +103,7 @@ def _import(book: Ledger, order: Order, given: dict[str, Any]) -> None:
 
 
 @contextmanager
-def _progress() -> Iterator[Progress | None]:
+def progress_bar() -> Iterator[Progress | None]:
     """Give what draws a bar on a terminal; nothing anywhere else."""
     if not sys.stderr.isatty():
         yield None
@@ -118,11 +118,15 @@ def _progress() -> Iterator[Progress | None]:
 
 
 def _imported_text(imported: Imported) -> str:
-    last = imported.first_number + imported.result_count - 1
-    numbers = f", numbers {imported.first_number} to {last}" if imported.result_count else ""
-    skipped = f"; {imported.skipped} rows skipped as the mapping file says" if imported.skipped else ""
     files = [f"file {code}: {show.text(name)}" for code, name in imported.files]
-    return "\n".join([*files, f"{imported.result_count} results are recorded{numbers}{skipped}"])
+    skipped = f"{imported.skipped} rows are skipped, as the mapping file says" if imported.skipped else ""
+    return "\n".join(filter(None, [*files, _counted(imported.first_number, imported.result_count), skipped]))
+
+
+def _counted(first: int, count: int) -> str:
+    if count <= 1:
+        return f"1 result is recorded, number {first}" if count else "no result is in the files"
+    return f"{count} results are recorded, numbers {first} to {first + count - 1}"
 
 
 def _imported_document(imported: Imported) -> dict[str, object]:
