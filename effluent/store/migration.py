@@ -2,49 +2,56 @@
 
 from __future__ import annotations
 
+import re
+from functools import cache
 from pathlib import Path
 
-from alembic import command
-from alembic.config import Config
-from alembic.migration import MigrationContext
-from alembic.script import ScriptDirectory
-from sqlalchemy import Engine, text
+from sqlalchemy import Engine, inspect, text
 
 from effluent.errors import LedgerDamaged, NotALedger, SchemaNewer, SchemaOlder
 from effluent.store.database import is_server, shown, translated, writes
 
 __all__ = ["check_schema", "head_revision", "is_older", "known_revisions", "migrate", "revision_of"]
 
+_REVISION = re.compile(r'^(down_)?revision = (?:"([^"]+)"|None)$', re.MULTILINE)
 
-def _config() -> Config:
+
+def _location() -> Path:
     package = Path(__file__).parent.parent
     shipped, checkout = package / "migrations", package.parent / "migrations"
-    config = Config()
-    config.set_main_option(
-        "script_location", str(shipped if shipped.is_dir() else checkout).replace("%", "%%")
-    )
-    config.set_main_option("path_separator", "os")
-    return config
+    return shipped if shipped.is_dir() else checkout
 
 
-def _scripts() -> ScriptDirectory:
-    return ScriptDirectory.from_config(_config())
+def known_revisions() -> tuple[str, ...]:
+    """Return every revision this version knows, oldest first."""
+    return _revisions(_location())
+
+
+@cache
+def _revisions(location: Path) -> tuple[str, ...]:
+    """Read the revisions off the migrations' text: every command asks, and Alembic takes long to load."""
+    after: dict[str, str] = {}
+    for path in (location / "versions").glob("*.py"):
+        found = dict(_REVISION.findall(path.read_text(encoding="utf-8")))
+        after[found["down_"]] = found[""]
+    known = [after[""]]
+    while known[-1] in after:
+        known.append(after[known[-1]])
+    return tuple(known)
 
 
 def head_revision() -> str:
     """Return the schema revision this version writes."""
-    return str(_scripts().get_current_head())
-
-
-def known_revisions() -> tuple[str, ...]:
-    """Return every revision this version knows, newest first."""
-    return tuple(script.revision for script in _scripts().walk_revisions())
+    return known_revisions()[-1]
 
 
 def revision_of(engine: Engine, place: str) -> str | None:
     """Return the schema revision a database holds, or None if it holds no ledger."""
     with translated(place), engine.connect() as connection:
-        return MigrationContext.configure(connection).get_current_revision()
+        if not inspect(connection).has_table("alembic_version"):
+            return None
+        found = connection.execute(text("SELECT version_num FROM alembic_version")).scalar()
+        return None if found is None else str(found)
 
 
 def check_schema(engine: Engine, place: str) -> None:
@@ -83,11 +90,16 @@ def migrate(engine: Engine, place: str, revision: str = "head") -> None:
     LedgerDamaged
         If a row refers to something that is not there; nothing is changed then.
     """
-    config = _config()
+    from alembic import command
+    from alembic.config import Config
+
+    config = Config()
+    config.set_main_option("script_location", str(_location()).replace("%", "%%"))
+    config.set_main_option("path_separator", "os")
     with translated(place), engine.connect() as connection:
         if not is_server(place):
-            connection.exec_driver_sql("PRAGMA foreign_keys = OFF")
-            connection.rollback()
+            # Outside a transaction: within one it would do nothing.
+            connection.connection.cursor().execute("PRAGMA foreign_keys = OFF")
         with writes(connection).begin():
             config.attributes["connection"] = connection
             command.upgrade(config, revision)
