@@ -235,7 +235,9 @@ def _said(version: Version) -> str:
         return f"The first carrier accepted the load on {manifest.accepted_on}."
     accepted = accepted_because(version.entry.reason) if manifest.state is ManifestState.ISSUED else ""
     return (
-        f"What is over or undetermined in annex A was accepted for shipment: {accepted}." if accepted else ""
+        f"Questioned at issue (a verdict of annex A or a quantity), and accepted: {accepted}."
+        if accepted
+        else ""
     )
 
 

@@ -139,7 +139,7 @@ def test_state_note_tells_the_life_of_the_manifest(book: Ledger) -> None:
     manifests.returned(book, code, by="AM", on=date(2026, 5, 30), signed_by="K. Invented")
     manifests.void(book, code, by="AM", reason="wrong works")
     assert worded(book, code).state_note == (
-        "What is over or undetermined in annex A was accepted for shipment: the works takes it."
+        "Questioned at issue (a verdict of annex A or a quantity), and accepted: the works takes it."
         " The first carrier accepted the load on 2026-05-21."
         " Signed copy came back on 2026-05-30, signed by K. Invented."
         " Void since 2026-06-01 (UTC): wrong works."
