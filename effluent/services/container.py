@@ -2,19 +2,19 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping
+from collections.abc import Collection, Iterable, Mapping, Sequence
 from dataclasses import dataclass, replace
 from datetime import datetime
 from fractions import Fraction
 
 from effluent.calc import contents as mixing
-from effluent.calc.contents import Flow
-from effluent.calc.number import decimal_text
+from effluent.calc.contents import Flow, Violation
 from effluent.calc.units import canonical
 from effluent.domain import CleanerType, Container, Movement, MovementKind, Site, Wash
 from effluent.errors import StateRefused, ValueRefused, VolumeRefused
 from effluent.services import register
-from effluent.services.moment import local, past
+from effluent.services.locality import localised
+from effluent.services.moment import at_site, local, past, shown
 from effluent.services.register import check, need_reason
 from effluent.services.shipment import shipped_containers
 from effluent.store.ledger import Ledger
@@ -28,7 +28,9 @@ __all__ = [
     "check_levels",
     "contents",
     "contents_of",
+    "in_time",
     "move",
+    "movements_of",
     "void_movement",
     "working_capacity",
 ]
@@ -60,19 +62,20 @@ def working_capacity(container: Container) -> Fraction:
 
 
 def contents(ledger: Ledger, code: str, *, as_of: str | None = None) -> Contents:
-    """Return what a container holds, by origin."""
+    """Return what a container holds, by origin; times are those of its site."""
     with ledger.reading(as_of) as reading:
-        return contents_of(reading, code)
+        held = contents_of(reading, code)
+        return replace(held, movements=localised(reading, held.movements))
 
 
 def contents_of(reading: Reading, code: str) -> Contents:
-    """Return what a container holds in an open view; origins in the order they were washed."""
+    """Return what a container holds in an open view; origins and movements in the order of time."""
     container: Container = reading.value("container", code)
     movements = _connected(reading, {code})
     volumes = mixing.contents(flows_of(movements.values())).get(code, {})
     washes = {wash.code: wash for wash in reading.values("wash", key=[w for w in volumes if w])}
     origins = [_origin(reading, washes[name], volume) for name, volume in volumes.items() if name and volume]
-    own = tuple(m for m in movements.values() if code in (m.source, m.target))
+    own = in_time(m for m in movements.values() if code in (m.source, m.target))
     level = sum(volumes.values(), Fraction(0))
     ordered = tuple(sorted(origins, key=lambda origin: origin.wash.performed_at))
     return Contents(container, level, working_capacity(container), ordered, own)
@@ -83,11 +86,11 @@ def amend(ledger: Ledger, code: str, changes: Mapping[str, object], *, by: str, 
 
     Raises
     ------
-    VolumeRefused, StateRefused
+    VolumeRefused
     """
 
     def still_fits(writing: Writing) -> None:
-        check_levels(writing, [code])
+        _check_fit(writing, [code])
 
     return register.amend(ledger, "container", code, changes, by=by, reason=reason, then=still_fits)
 
@@ -104,7 +107,9 @@ def move(ledger: Ledger, movement: Movement, *, by: str, reason: str = "") -> st
     _check_ends(movement)
 
     def job(writing: Writing) -> str:
-        site = writing.value("site", writing.value("container", movement.source or "").site)
+        source: Container = writing.value("container", movement.source or "")
+        site: Site = writing.value("site", source.site)
+        _check_same_site(writing, source, movement)
         placed = replace(movement, moved_at=_moment(movement, site, ledger))
         check(placed)
         code = writing.record(placed)
@@ -138,25 +143,67 @@ def check_levels(writing: Writing, touched: Iterable[str | None]) -> None:
     StateRefused, VolumeRefused
     """
     codes = sorted({code for code in touched if code is not None})
-    shipped = shipped_containers(writing)
+    shipped = shipped_containers(writing) if codes else frozenset()
     for code in codes:
         if code in shipped:
-            raise StateRefused(
-                f"container {code}", "shipped", "it takes no more water and gives none; use another"
-            )
-    capacities = {code: working_capacity(writing.value("container", code)) for code in codes}
-    found = mixing.first_violation(flows_of(_touching(writing, codes).values()), capacities)
+            remedy = "nothing goes in or out any more; use another, or void the manifest if it never left"
+            raise StateRefused(f"container {code}", "shipped on a manifest", remedy)
+    _check_fit(writing, codes)
+
+
+def _check_fit(writing: Writing, codes: Sequence[str]) -> None:
+    """Refuse containers that would have been below empty or too full at any time.
+
+    Raises
+    ------
+    VolumeRefused
+    """
+    containers = {code: writing.value("container", code) for code in codes}
+    capacities = {code: working_capacity(container) for code, container in containers.items()}
+    found = mixing.first_violation(_within(flows_of(_touching(writing, codes).values()), codes), capacities)
     if found is not None:
-        at = f"{found.at:%Y-%m-%d %H:%M} UTC"
-        raise VolumeRefused(
-            found.container,
-            f"it would be {found.what} at {at}: "
-            f"{_litres(found.level)} of {_litres(found.capacity)} working capacity",
+        site: Site = writing.value("site", containers[found.container].site)
+        raise VolumeRefused(found.container, _impossible(found, site))
+
+
+def _within(flows: Iterable[Flow], codes: Collection[str | None]) -> list[Flow]:
+    """Return flows with only those ends that are asked about; the whole story of the others is elsewhere."""
+    return [
+        replace(
+            flow,
+            source=flow.source if flow.source in codes else None,
+            target=flow.target if flow.target in codes else None,
         )
+        for flow in flows
+    ]
+
+
+def _impossible(found: Violation, site: Site) -> str:
+    when = shown(at_site(found.at, site))
+    if found.level < 0 or found.capacity is None:
+        missing = _told_apart(-found.level, Fraction(0))[0]
+        return (
+            f"at {when} it would be {missing} L below empty: more would leave than had gone in; "
+            f"look at: effluent container contents {found.container}"
+        )
+    level, capacity = _told_apart(found.level, found.capacity)
+    return (
+        f"at {when} it would hold {level} L, above its working capacity of {capacity} L; "
+        "use another container, or split the water between several"
+    )
+
+
+def _told_apart(first: Fraction, second: Fraction) -> tuple[str, str]:
+    """Return two volumes with as many decimals as it takes to see that they differ."""
+    for places in range(1, 12):
+        told = f"{float(first):.{places}f}", f"{float(second):.{places}f}"
+        if told[0] != told[1]:
+            break
+    return told
 
 
 def flows_of(movements: Iterable[Movement]) -> list[Flow]:
-    """Return movements as exact flows; equal times keep the order in which they were recorded."""
+    """Return movements as exact flows, in the order of `in_time`."""
     return [
         Flow(
             at=m.moved_at,
@@ -166,8 +213,23 @@ def flows_of(movements: Iterable[Movement]) -> list[Flow]:
             source=m.source,
             target=m.target,
         )
-        for order, m in enumerate(movements)
+        for order, m in enumerate(in_time(movements))
     ]
+
+
+def in_time(movements: Iterable[Movement]) -> tuple[Movement, ...]:
+    """Return movements in the order of time.
+
+    At equal times fills come first, then transfers, then withdrawals, each in the order given: so it
+    does not matter which of them was recorded first.
+    """
+    rank = list(MovementKind)
+    return tuple(sorted(movements, key=lambda m: (m.moved_at, rank.index(m.kind))))
+
+
+def movements_of(reading: Reading, code: str) -> tuple[Movement, ...]:
+    """Return the movements into and out of a container, in the order of time."""
+    return in_time(_touching(reading, [code]).values())
 
 
 def _touching(reading: Reading, codes: Iterable[str]) -> dict[str, Movement]:
@@ -216,9 +278,17 @@ def _check_ends(movement: Movement) -> None:
         raise ValueRefused("volume", str(movement.volume), "nothing would move")
 
 
+def _check_same_site(reading: Reading, source: Container, movement: Movement) -> None:
+    if movement.target is None:
+        return
+    target: Container = reading.value("container", movement.target)
+    if target.site != source.site:
+        remedy = (
+            f"it stands at {target.site}, {source.code} at {source.site}; water goes from site to site on a "
+            "manifest; amend the site of a container that was moved"
+        )
+        raise ValueRefused("container", target.code, remedy)
+
+
 def _moment(movement: Movement, site: Site, ledger: Ledger) -> datetime:
-    return past("time of the movement", local(movement.moved_at, site), ledger.clock())
-
-
-def _litres(volume: Fraction | None) -> str:
-    return "unlimited" if volume is None else f"{decimal_text(volume, digits=6)} L"
+    return past("time of the movement", local(movement.moved_at, site), ledger.clock(), site=site)

@@ -4,20 +4,25 @@ from __future__ import annotations
 
 from collections.abc import Callable, Mapping
 from dataclasses import replace
+from fractions import Fraction
 from typing import Any, NamedTuple
 from zoneinfo import ZoneInfo, ZoneInfoNotFoundError
 
 from effluent.calc.mixture import read_ratio
 from effluent.calc.units import canonical
 from effluent.domain import Cleaner, CleanerForm, Container, Quantity, Site
-from effluent.errors import ValueRefused
+from effluent.errors import StateRefused, ValueRefused
+from effluent.services.locality import localised
 from effluent.store.column import plain_fields
 from effluent.store.ledger import Ledger
 from effluent.store.noun import noun_of
-from effluent.store.reading import Version
+from effluent.store.reading import Reading, Version
 from effluent.store.writing import Writing
 
 __all__ = ["Shown", "add", "amend", "check", "check_quantities", "listing", "need_reason", "show", "void"]
+
+
+_LARGEST = 10**12
 
 
 class Shown(NamedTuple):
@@ -69,22 +74,36 @@ def amend(
 
 
 def void(ledger: Ledger, noun: str, code: str, *, by: str, reason: str) -> None:
-    """Record that something does not stand; it stays readable."""
+    """Record that something does not stand; it stays readable.
+
+    Raises
+    ------
+    StateRefused
+        If something refers to it, or a person has recorded anything.
+    """
     need_reason(reason, "void")
-    ledger.write(lambda writing: writing.void(noun, code), by=by, action=f"void {noun}", reason=reason)
+
+    def job(writing: Writing) -> None:
+        if noun == "person":
+            _check_silent(writing, code)
+        writing.void(noun, code)
+
+    ledger.write(job, by=by, action=f"void {noun}", reason=reason)
 
 
 def show(ledger: Ledger, noun: str, code: str, *, as_of: str | None = None) -> Shown:
-    """Return a record with all its versions, voided or not."""
+    """Return a record with all its versions, voided or not; times are those of its site."""
     with ledger.reading(as_of) as reading:
         versions = reading.versions(noun, code)
-    return Shown(versions[-1].value, versions, versions[-1].voided)
+        values = localised(reading, [version.value for version in versions])
+    told = tuple(version._replace(value=value) for version, value in zip(versions, values, strict=True))
+    return Shown(told[-1].value, told, told[-1].voided)
 
 
 def listing(ledger: Ledger, noun: str, *, as_of: str | None = None) -> tuple[Any, ...]:
-    """Return the records of a noun that stand."""
+    """Return the records of a noun that stand; times are those of their sites."""
     with ledger.reading(as_of) as reading:
-        return reading.values(noun)
+        return localised(reading, reading.values(noun))
 
 
 def check(value: Any) -> None:
@@ -99,18 +118,41 @@ def check(value: Any) -> None:
         _check_zone(value.time_zone)
     if isinstance(value, Cleaner):
         _check_ratio(value)
-    if isinstance(value, Container) and not 0 < value.fill_fraction.magnitude <= 100:
-        raise ValueRefused("fill fraction", str(value.fill_fraction), "use a share above 0 % and up to 100 %")
+    if isinstance(value, Container):
+        _check_capacity(value)
 
 
 def check_quantities(value: Any) -> None:
-    """Refuse quantities of the wrong kind, and volumes, masses and densities below zero."""
+    """Refuse quantities of the wrong kind or size, and volumes, masses and densities below zero."""
     for field in plain_fields(type(value)):
         quantity, measures = getattr(value, field.name), field.metadata.get("measures")
         if isinstance(quantity, Quantity) and measures:
-            amount = canonical(quantity, measures)
-            if amount < 0 and measures not in ("temperature", "limit"):
+            _check_size(field.name.replace("_", " "), quantity, canonical(quantity, measures))
+            if canonical(quantity, measures) < 0 and measures not in ("temperature", "limit"):
                 raise ValueRefused(field.name.replace("_", " "), str(quantity), "it cannot be negative")
+
+
+def _check_size(name: str, quantity: Quantity, amount: Fraction) -> None:
+    """Refuse what nobody can have measured, so that no arithmetic has to cope with it."""
+    if max(abs(amount), quantity.spread_magnitude) > _LARGEST:
+        raise ValueRefused(name, str(quantity), "nothing here is that large; check the number and the unit")
+
+
+def _check_capacity(container: Container) -> None:
+    if not canonical(container.capacity, "volume"):
+        raise ValueRefused("capacity", str(container.capacity), "a container holds more than nothing")
+    if not 0 < container.fill_fraction.magnitude <= 100:
+        remedy = "use a share above 0 % and up to 100 %"
+        raise ValueRefused("fill fraction", str(container.fill_fraction), remedy)
+
+
+def _check_silent(reading: Reading, person: str) -> None:
+    recorded = sum(entry.recorded_by == person for entry in reading.entries())
+    if recorded:
+        state = f"named by {recorded} {'entry' if recorded == 1 else 'entries'}"
+        raise StateRefused(
+            f"person {person}", state, "the record keeps who recorded it; amend the name or role"
+        )
 
 
 def _check_ratio(cleaner: Cleaner) -> None:

@@ -64,7 +64,7 @@ def _check_source(sample: Sample) -> None:
 def _times(sample: Sample, site: Site, now: datetime) -> dict[str, Any]:
     times = {name: getattr(sample, name) for name in ("started_at", "ended_at")}
     return {
-        name: past("time of the sample", local(moment, site), now)
+        name: past("time of the sample", local(moment, site), now, site=site)
         for name, moment in times.items()
         if moment is not None
     }

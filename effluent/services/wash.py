@@ -12,6 +12,7 @@ from effluent.calc.units import canonical
 from effluent.domain import Movement, MovementKind, Quantity, Site, Wash
 from effluent.errors import ValueRefused
 from effluent.services.container import check_levels
+from effluent.services.locality import localised
 from effluent.services.moment import local, local_day, past
 from effluent.services.question import answer
 from effluent.services.register import check, need_reason
@@ -105,13 +106,13 @@ def amend(
         placed = _checked(writing, replace(old, **changes), ledger)  # type: ignore[arg-type]
         answer(writing, questions(writing, placed), accept=accept)
         before = writing.values("movement", wash=code, kind=MovementKind.FILL)
+        wanted = _fills(placed, _fills_after(before, placed) if fills is None else fills)
         if placed != old:
             writing.amend(placed)
-        elif fills is None:
+        made = _replace_fills(writing, before, wanted, moved=placed.site != old.site)
+        if placed == old and made == before:
             raise ValueRefused("wash", code, "nothing would change; name what to change")
-        wanted = _fills(placed, _fills_after(before, placed) if fills is None else fills)
-        made = _replace_fills(writing, before, wanted)
-        check_levels(writing, {fill.target for fill in (*before, *made)})
+        check_levels(writing, {fill.target for fill in {*before} ^ {*made}})
         return Recorded(code, made, balance_of(writing, placed))
 
     return ledger.write(job, by=by, action="amend wash", reason=reason)
@@ -153,13 +154,13 @@ def balances(
     until: date | None = None,
     as_of: str | None = None,
 ) -> tuple[Balanced, ...]:
-    """Return the volume balances of washes, in the order they were recorded, by site and type."""
+    """Return the volume balances of washes, in the order they were recorded, at the times of their sites."""
     with ledger.reading(as_of) as reading:
         sites = {s.code: s for s in reading.values("site")}
         types = {e.code: e.type_label for e in reading.values("engine")}
         if site is not None:
             reading.value("site", site)
-        washes = reading.values("wash", **({"site": site} if site else {}))
+        washes = localised(reading, reading.values("wash", **({"site": site} if site else {})))
     return tuple(
         _balanced(wash, sites[wash.site], types[wash.engine])
         for wash in washes
@@ -169,7 +170,7 @@ def balances(
 
 
 def totals(balanced: Sequence[Balanced]) -> dict[tuple[str, str, str], Balance]:
-    """Return balances summed by site, engine type and month of the wash (UTC)."""
+    """Return balances summed by site, engine type and month of the wash."""
     return summary(
         ((each.wash.site, each.engine_type, f"{each.wash.performed_at:%Y-%m}"), each.balance)
         for each in balanced
@@ -178,7 +179,7 @@ def totals(balanced: Sequence[Balanced]) -> dict[tuple[str, str, str], Balance]:
 
 def _checked(reading: Reading, wash: Wash, ledger: Ledger) -> Wash:
     site: Site = reading.value("site", wash.site)
-    moment = past("time of the wash", local(wash.performed_at, site), ledger.clock())
+    moment = past("time of the wash", local(wash.performed_at, site), ledger.clock(), site=site)
     placed = replace(wash, performed_at=moment)
     check(placed)
     check_trade(placed)
@@ -226,13 +227,17 @@ def _fill(wash: Wash, container: str, volume: Quantity) -> Movement:
 
 def _record_fill(writing: Writing, fill: Movement) -> Movement:
     check(fill)
-    target, wash = writing.value("container", fill.target or ""), writing.value("wash", fill.wash or "")
+    _check_same_site(writing, fill)
+    return replace(fill, code=writing.record(fill))
+
+
+def _check_same_site(reading: Reading, fill: Movement) -> None:
+    target, wash = reading.value("container", fill.target or ""), reading.value("wash", fill.wash or "")
     if target.site != wash.site:
         remedy = (
             f"it stands at {target.site}, the wash was at {wash.site}; amend the container if it was moved"
         )
         raise ValueRefused("container", target.code, remedy)
-    return replace(fill, code=writing.record(fill))
 
 
 def _fills_after(before: Sequence[Movement], wash: Wash) -> Fills:
@@ -245,19 +250,27 @@ def _fills_after(before: Sequence[Movement], wash: Wash) -> Fills:
 
 
 def _replace_fills(
-    writing: Writing, before: Sequence[Movement], after: Sequence[Movement]
+    writing: Writing, before: Sequence[Movement], after: Sequence[Movement], *, moved: bool
 ) -> tuple[Movement, ...]:
     """Bring the fills of a wash to what they should be, changing only what differs."""
     standing = {fill.target: fill for fill in before}
     made = []
     for fill in after:
         old = standing.pop(fill.target, None)
-        made.append(_record_fill(writing, fill) if old is None else replace(fill, code=old.code))
-        if old is not None and made[-1] != old:
-            writing.amend(made[-1])
+        made.append(_record_fill(writing, fill) if old is None else _amend_fill(writing, fill, old))
+        if moved:
+            _check_same_site(writing, fill)
     for fill in standing.values():
         writing.void("movement", fill.code)
     return tuple(made)
+
+
+def _amend_fill(writing: Writing, fill: Movement, old: Movement) -> Movement:
+    amended = replace(fill, code=old.code)
+    if amended != old:
+        check(amended)
+        writing.amend(amended)
+    return amended
 
 
 def _balanced(wash: Wash, site: Site, engine_type: str) -> Balanced:
