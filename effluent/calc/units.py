@@ -125,6 +125,8 @@ def canonical_unit(unit: str) -> str:
 @lru_cache(maxsize=4096)
 def _line(source: str, target: str) -> tuple[Fraction, Fraction]:
     """Return factor and offset between two registry names, from two points of the line."""
+    if source == target:
+        return Fraction(1), Fraction(0)
     registry = _registry()
     zero, one = (Fraction(registry.Quantity(Fraction(x), source).to(target).magnitude) for x in (0, 1))
     return one - zero, zero
