@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 import difflib
+import functools
 from collections.abc import Iterable, Mapping, Sequence
 from typing import Any, NamedTuple
 
-from sqlalchemy import Connection, Select, and_, func, literal_column, not_, or_, select
+from sqlalchemy import Alias, Connection, Select, Table, and_, func, literal_column, not_, or_, select
 
 from effluent.domain import Manifest, ManifestLine, Result
 from effluent.errors import RecordMissing
@@ -44,6 +45,12 @@ class Version(NamedTuple):
     voided: bool
     entry: Entry
     value: Any
+
+
+@functools.cache
+def _later(table: Table) -> Alias:
+    """Return a table under the name by which later versions are looked for; making it anew is slow."""
+    return table.alias("later")
 
 
 class Reading:
@@ -228,7 +235,7 @@ class Reading:
         )
 
     def _standing(self, kind: Noun) -> Select[Any]:
-        table, later = kind.table, kind.table.alias("later")
+        table, later = kind.table, _later(kind.table)
         newer = select(later.c.row).where(
             later.c.key == table.c.key, later.c.version > table.c.version, later.c.entry <= self.as_of
         )
