@@ -7,7 +7,7 @@ import functools
 from collections.abc import Iterable, Mapping, Sequence
 from typing import Any, NamedTuple
 
-from sqlalchemy import Alias, Connection, Select, Table, and_, func, literal_column, not_, or_, select
+from sqlalchemy import Connection, FromClause, Select, Table, and_, func, literal_column, not_, or_, select
 
 from effluent.domain import Manifest, ManifestLine, Result
 from effluent.errors import RecordMissing
@@ -48,7 +48,7 @@ class Version(NamedTuple):
 
 
 @functools.cache
-def _later(table: Table) -> Alias:
+def _later(table: Table) -> FromClause:
     """Return a table under the name by which later versions are looked for; making it anew is slow."""
     return table.alias("later")
 
