@@ -47,7 +47,7 @@ _MEANINGS: tuple[tuple[str, type[StoreError]], ...] = (
     ("locked", LedgerBusy),
     ("busy", LedgerBusy),
     ("not a database", NotALedger),
-    ("already exists", NotALedger),
+    ('" already exists', NotALedger),
     ("malformed", LedgerDamaged),
     ("disk image", LedgerDamaged),
     ("decode to utf-8", LedgerDamaged),
@@ -64,7 +64,7 @@ _MEANINGS: tuple[tuple[str, type[StoreError]], ...] = (
 )
 _REMEDIES = {
     "not a database": "name the file that `effluent ledger create` made",
-    "already exists": "it holds other tables; name an empty database",
+    '" already exists': "it holds other tables; name an empty database",
 }
 
 

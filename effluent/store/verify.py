@@ -119,7 +119,7 @@ def _check_guards(connection: Connection, present: set[str]) -> Iterator[Finding
     """Look for the triggers that refuse changes; a ledger without them is open to them."""
     if connection.dialect.name == "sqlite":
         query = "SELECT name FROM sqlite_master WHERE type = 'trigger' AND sql LIKE :guard"
-        wanted = {f"tr_{name}_{change}" for name in present for change in ("update", "delete")}
+        wanted = {f"tr_{name}_{change}" for name in present for change in ("update", "delete", "replace")}
     else:
         query = "SELECT tgname FROM pg_trigger WHERE tgenabled IN ('O', 'A')"
         wanted = {f"tr_{name}_change" for name in present}

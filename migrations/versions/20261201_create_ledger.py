@@ -33,6 +33,19 @@ TABLES = (
     "result_void",
 )
 
+# What INSERT OR REPLACE takes for the same row: it deletes the old one without asking the DELETE trigger.
+VERSION = ("key", "version")
+PART = ("manifest", "version", "position")
+ALIKE = {
+    "entry": [("sequence",), ("digest",)],
+    "ledger": [("row",)],
+    "record": [("row",), ("key",)],
+    "result": [("row",)],
+    "manifest_carrier": [("row",), PART],
+    "manifest_line": [("row",), PART],
+    "result_void": [("row",), ("result",)],
+}
+
 
 def upgrade():
     create_tables()
@@ -49,6 +62,21 @@ def forbid_changes_sqlite():
                 f'CREATE TRIGGER "tr_{table}_{change.lower()}" BEFORE {change} ON "{table}" '
                 "BEGIN SELECT RAISE(ABORT, 'the ledger is append-only'); END"
             )
+
+        op.execute(
+            f'CREATE TRIGGER "tr_{table}_replace" BEFORE INSERT ON "{table}" WHEN {is_there(table)} '
+            "BEGIN SELECT RAISE(ABORT, 'the ledger is append-only'); END"
+        )
+
+
+def is_there(table):
+    conditions = [
+        f'EXISTS (SELECT 1 FROM "{table}" WHERE '
+        + " AND ".join(f'"{column}" = NEW."{column}"' for column in columns)
+        + ")"
+        for columns in ALIKE.get(table, [("row",), VERSION])
+    ]
+    return " OR ".join(conditions)
 
 
 def forbid_changes_postgresql():
