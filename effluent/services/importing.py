@@ -14,7 +14,7 @@ from effluent.intake.explain import Explanation
 from effluent.intake.explain import explain as explain_file
 from effluent.intake.layout import PLAIN, Layout
 from effluent.intake.result import ResultChunk, ResultReader
-from effluent.services.batch import Batch, batches
+from effluent.services.delivery import Batch, batches
 from effluent.services.receiving import Receiving
 from effluent.services.water import site_of
 from effluent.store.ledger import Ledger

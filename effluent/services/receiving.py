@@ -6,8 +6,8 @@ from collections.abc import Iterable, Iterator, Mapping
 from typing import Any
 
 from effluent.errors import FileRefused, RowError
-from effluent.services.batch import Batch
 from effluent.services.bottle import Bottles
+from effluent.services.delivery import Batch
 from effluent.services.doubt import Doubts
 from effluent.services.question import answer
 from effluent.services.repeat import Repeats

@@ -10,7 +10,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from effluent.errors import RowError
-from effluent.services.batch import Batch
+from effluent.services.delivery import Batch
 from effluent.store.writing import Writing
 
 __all__ = ["Repeats"]

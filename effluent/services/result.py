@@ -14,7 +14,7 @@ from effluent.errors import FileRefused, RowError, ValueRefused
 from effluent.intake.result import ResultChunk, read_cells
 from effluent.intake.sheet import write_csv, write_xlsx
 from effluent.reference.analyte import find
-from effluent.services.batch import Batch
+from effluent.services.delivery import Batch
 from effluent.services.importing import Imported, import_files
 from effluent.services.receiving import Receiving
 from effluent.services.register import need_reason
