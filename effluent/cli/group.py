@@ -12,6 +12,7 @@ from effluent.settings import CAUTION
 __all__ = ["TABLE", "Group", "RootGroup", "root"]
 
 TABLE: dict[str, tuple[str, str]] = {
+    "demo": ("effluent.cli.demo:demo", "Make two invented years of washes, and tell their story."),
     "convert": ("effluent.cli.convert:convert", "Convert a value to another unit, exactly."),
     "trace": (
         "effluent.cli.trace:trace",

@@ -1,0 +1,77 @@
+"""The story of the demo in a page, with the commands to try next."""
+
+from __future__ import annotations
+
+import shlex
+from datetime import timedelta
+from pathlib import Path
+
+from effluent.domain import Outcome
+from effluent.services.play import Facts
+from effluent.services.scenario import page
+from effluent.settings import CAUTION
+
+__all__ = ["LEDGER", "tell"]
+
+LEDGER = "demo.ledger"
+"""Name of the ledger in the folder of the demo."""
+
+
+def tell(facts: Facts, folder: Path, *, program: str = "effluent") -> str:
+    """Return the story as text.
+
+    Parameters
+    ----------
+    facts : Facts
+        What happened.
+    folder : Path
+        Where everything is going to be, as the user named it.
+    program : str
+        How the command is called.
+    """
+    laboratory, paper = folder / "laboratory", folder / "paper"
+    return page("story").format(
+        **_told(facts),
+        caution=CAUTION,
+        program=program,
+        folder=folder,
+        ledger_name=folder / LEDGER,
+        ledger=_quoted(folder / LEDGER),
+        laboratory_name=laboratory,
+        refused=_quoted(laboratory / facts.refused_file),
+        layout=_quoted(laboratory / "ribeira.toml"),
+        issued=_quoted(paper / f"{facts.draft}-issued.pdf"),
+        papers="\n".join(f"  {paper / name}" for name in facts.papers),
+    )
+
+
+def _told(facts: Facts) -> dict[str, object]:
+    return {
+        "washes": facts.washes,
+        "first_day": facts.first_day,
+        "last_day": facts.last_day,
+        "last_month": facts.last_day - timedelta(days=30),
+        "file_count": len(facts.files),
+        "verdicts": ", ".join(f"{facts.outcomes[outcome]} {outcome}" for outcome in Outcome),
+        "rain_wash": facts.rain_wash,
+        "misread_wash": facts.misread_wash,
+        "misread_entry": facts.misread_entry,
+        "refused_file": facts.refused_file,
+        "refusal": "\n".join(f"             {line}" for line in facts.refusal.splitlines()[1:]),
+        "over_drum": facts.over.source,
+        "over_sample": facts.over.code,
+        "held_tote": facts.undetermined.source,
+        "held_sample": facts.undetermined.code,
+        "late_limit": facts.late_limit,
+        "returned": facts.returned,
+        "draft": facts.draft,
+        "open_tank": facts.open_tank,
+        "number": facts.number,
+        "entries": facts.entries,
+        "digest": facts.digest,
+        "witness": f"{facts.witness[0]}:{facts.witness[1][:16]}",
+    }
+
+
+def _quoted(path: Path) -> str:
+    return shlex.quote(str(path))
