@@ -16,9 +16,11 @@ if TYPE_CHECKING:
 
 __all__ = ["trace"]
 
+_NOUNS = ("engine", "cleaner", "wash", "movement", "container", "sample", "point", "manifest")
+
 
 @click.command(
-    "trace", help=f"{TABLE['trace'][1]} NOUN is engine, wash, container, sample, manifest or the like."
+    "trace", help=f"{TABLE['trace'][1]}\n\nNOUN is one of {', '.join(_NOUNS)}; CODE is its number."
 )
 @click.argument("noun", type=line)
 @click.argument("code", type=line)
@@ -46,6 +48,6 @@ def _tree(links: tuple[Link, ...], depth: int = 1) -> Iterator[str]:
 
 
 def _line(link: Link) -> str:
-    if link.noun == "verdict":
-        return f"verdict: {link.said}"
-    return f"{link.noun} {show.text(link.code)}: {show.text(link.said)}"
+    above = " (see above)" if link.above else ""
+    noun = "verdict on sample" if link.noun == "verdict" else link.noun
+    return f"{noun} {show.text(link.code)}: {show.text(link.said)}{above}"
