@@ -1,4 +1,4 @@
-"""The commands of containers: the register's, and contents, transfer, withdraw, void."""
+"""The commands of containers: the register's, and contents, transfer, withdraw."""
 
 from __future__ import annotations
 
@@ -8,7 +8,7 @@ import click
 
 from effluent.cli import option, show
 from effluent.cli.field import changes, fields_as_options
-from effluent.cli.register import add_command, list_command, register_group, show_command
+from effluent.cli.register import add_command, list_command, register_group, show_command, void_command
 from effluent.cli.value import instant, line, line_or_nothing, quantity, word
 from effluent.domain import Container, MeasuredBy, Movement, MovementKind
 
@@ -92,20 +92,6 @@ def withdraw(
     show.say(f"movement {code} is recorded: {movement.volume} from {show.text(source)} to {where}")
 
 
-@container.command("unmove")
-@click.argument("code", type=line)
-@option.reason_required
-@option.writes
-def unmove(*, code: str, ledger: str, by: str, reason: str) -> None:
-    """Void a transfer or withdrawal; it stays readable. CODE is the number of the movement."""
-    from effluent.services import container as containers
-    from effluent.wiring import open_ledger
-
-    with open_ledger(ledger) as book:
-        containers.void_movement(book, code, by=by, reason=reason)
-    show.say(f"movement {show.text(code)} is void")
-
-
 @container.command("contents")
 @click.argument("code", type=line)
 @option.reads
@@ -137,17 +123,21 @@ def _move(ledger: str, movement: Movement, *, by: str, reason: str) -> str:
 def _as_text(held: Contents) -> list[str]:
     level, room = float(held.level_l), float(held.capacity_l - held.level_l)
     head = f"container {show.text(held.container.code)}: {level:.1f} L, room for {room:.1f} L"
-    if not held.origins:
-        return [f"{head}\nit holds nothing"]
+    if not held.level_l:
+        head += "\nit holds nothing"
     origins = [
         [o.wash.code, o.wash.engine, o.wash.kind, o.cleaner_type or "no cleaner", f"{float(o.volume_l):.1f}"]
         for o in held.origins
     ]
-    movements = [[m.code, m.kind, m.moved_at, m.source, m.target, m.volume, m.wash] for m in held.movements]
+    movements = [
+        [m.code, m.kind, m.moved_at, m.source, m.target, m.volume, m.wash, m.destination]
+        for m in held.movements
+    ]
+    headings = ["movement", "kind", "at", "from", "into", "volume", "wash", "destination"]
     return [
         head,
-        show.table(["wash", "engine", "kind", "cleaner type", "holds L"], origins),
-        show.table(["movement", "kind", "at", "from", "into", "volume", "wash"], movements),
+        show.table(["wash", "engine", "kind", "cleaner type", "holds L"], origins) if origins else "",
+        show.table(headings, movements) if movements else "",
     ]
 
 
@@ -167,3 +157,6 @@ def _as_document(held: Contents) -> dict[str, object]:
         ],
         "movements": list(held.movements),
     }
+
+
+container.add_command(void_command("container", Container))

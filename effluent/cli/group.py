@@ -24,6 +24,7 @@ TABLE: dict[str, tuple[str, str]] = {
     "engine": ("effluent.cli.register:engine", "Engines that are washed."),
     "cleaner": ("effluent.cli.register:cleaner", "Gas-path cleaners."),
     "container": ("effluent.cli.container:container", "Drums, totes, bowsers and tanks."),
+    "movement": ("effluent.cli.movement:movement", "Water into, between and out of containers."),
     "wash": ("effluent.cli.wash:wash", "Washes: what was put in, caught and filled."),
     "sample": ("effluent.cli.sample:sample", "Samples of containers, wash streams and discharge points."),
     "result": ("effluent.cli.result:result", "Laboratory results: read from files or entered by hand."),

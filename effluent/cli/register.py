@@ -1,9 +1,10 @@
-"""The commands of the standing records: add, list, show, amend, and void where a noun allows it."""
+"""The commands of the standing records: add, list, show, amend, and void what nothing refers to."""
 
 from __future__ import annotations
 
 import dataclasses
 from collections.abc import Iterator, Sequence
+from datetime import datetime
 from typing import TYPE_CHECKING
 
 import click
@@ -35,12 +36,13 @@ __all__ = [
 
 
 def register_group(noun: str, record: type, *, commands: Sequence[click.Command] | None = None) -> Group:
-    """Return the group of a noun: add, list, show and amend, or the commands given.
+    """Return the group of a noun: add, list, show, amend and void, or the commands given.
 
     Further verbs join with ``@group.command()``.
     """
     if commands is None:
-        commands = [make(noun, record) for make in (add_command, list_command, show_command, amend_command)]
+        makers = (add_command, list_command, show_command, amend_command, void_command)
+        commands = [make(noun, record) for make in makers]
     return Group(noun, {command.name or "": command for command in commands}, help=TABLE[noun][1])
 
 
@@ -132,7 +134,7 @@ def _history(versions: Sequence[Version]) -> str:
         [
             version.number,
             version.entry.sequence,
-            version.entry.recorded_at,
+            datetime.fromisoformat(version.entry.recorded_at).replace(microsecond=0),
             version.entry.recorded_by,
             version.entry.reason,
             "; ".join(_difference(before, version)),
@@ -202,7 +204,10 @@ def amend_command(noun: str, record: type) -> click.Command:
 def void_command(noun: str, record: type) -> click.Command:
     """Return the command that voids one; it stays readable."""
 
-    @click.command("void", help=f"Void a {noun}; it stays readable. CODE is its {_code_meaning(record)}.")
+    @click.command(
+        "void",
+        help=f"Void a {noun} that nothing refers to; it stays readable. CODE is its {_code_meaning(record)}.",
+    )
     @click.argument("code", type=line)
     @option.reason_required
     @option.writes

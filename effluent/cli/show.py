@@ -90,8 +90,16 @@ def _written(value: object) -> str:
     if isinstance(value, Enum):
         return str(value.value)
     if isinstance(value, datetime):
-        return value.isoformat(sep=" ", timespec="seconds" if value.second else "minutes")
+        return _moment(value)
     return str(value)
+
+
+def _moment(value: datetime) -> str:
+    if value.tzinfo is None:
+        return value.isoformat(sep=" ", timespec="seconds" if value.second else "minutes")
+    from effluent.services.moment import shown
+
+    return shown(value)
 
 
 def plain(value: Any) -> Any:

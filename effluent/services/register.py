@@ -9,9 +9,9 @@ from typing import Any, NamedTuple
 from zoneinfo import ZoneInfo, ZoneInfoNotFoundError
 
 from effluent.calc.mixture import read_ratio
-from effluent.calc.units import canonical
+from effluent.calc.units import canonical, kind_of
 from effluent.domain import Cleaner, CleanerForm, Container, Quantity, Site
-from effluent.errors import StateRefused, ValueRefused
+from effluent.errors import StateRefused, UnitMismatch, UnitUnknown, ValueRefused
 from effluent.services.locality import localised
 from effluent.store.column import plain_fields
 from effluent.store.ledger import Ledger
@@ -127,9 +127,24 @@ def check_quantities(value: Any) -> None:
     for field in plain_fields(type(value)):
         quantity, measures = getattr(value, field.name), field.metadata.get("measures")
         if isinstance(quantity, Quantity) and measures:
-            _check_size(field.name.replace("_", " "), quantity, canonical(quantity, measures))
-            if canonical(quantity, measures) < 0 and measures not in ("temperature", "limit"):
-                raise ValueRefused(field.name.replace("_", " "), str(quantity), "it cannot be negative")
+            name = field.name.replace("_", " ")
+            amount = _amount(name, quantity, measures)
+            _check_size(name, quantity, amount)
+            if amount < 0 and measures not in ("temperature", "limit"):
+                raise ValueRefused(name, str(quantity), "it cannot be negative")
+
+
+def _amount(name: str, quantity: Quantity, measures: str) -> Fraction:
+    """Return the amount in the canonical unit; what is wrong with the unit names the field."""
+    try:
+        if measures == "volume" and kind_of(quantity.unit) == "mass":
+            remedy = (
+                f"make a volume of it: effluent convert {quantity.text} {quantity.unit} L --density '1 kg/L'"
+            )
+            raise UnitMismatch(quantity.unit, "L", remedy)
+        return canonical(quantity, measures)
+    except (UnitUnknown, UnitMismatch) as error:
+        raise type(error)(*error.args[:-1], f"{error.args[-1]} (in {name} {str(quantity)!r})") from error
 
 
 def _check_size(name: str, quantity: Quantity, amount: Fraction) -> None:

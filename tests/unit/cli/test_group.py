@@ -34,7 +34,7 @@ def test_version_is_the_package_s(capsys: pytest.CaptureFixture[str]) -> None:
         (["sitee"], "no command 'sitee'; did you mean site?"),
         (["ENGIN"], "no command 'ENGIN'; did you mean engine?"),
         (["site", "shwo"], "no command 'shwo'; did you mean show?"),
-        (["site", "zzz"], "no command 'zzz'; there are: add, list, show, amend"),
+        (["site", "zzz"], "no command 'zzz'; there are: add, list, show, amend, void"),
     ],
 )
 def test_unknown_command_proposes_near_names(

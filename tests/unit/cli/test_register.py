@@ -90,9 +90,9 @@ def test_show_tells_what_each_version_changed(noted: Noted, capsys: pytest.Captu
         "",
         "version  entry  recorded at           by  reason    what",
         "-------  -----  --------------------  --  --------  ---------------------------",
-        "1        10     2026-03-01T09:00:00Z  AM            first recorded",
-        "2        20     2026-03-02T09:00:00Z  AM  left out  role: nothing -> supervisor",
-        "3        30     2026-03-03T09:00:00Z  AM  twice     voided",
+        "1        10     2026-03-01 09:00 UTC  AM            first recorded",
+        "2        20     2026-03-02 09:00 UTC  AM  left out  role: nothing -> supervisor",
+        "3        30     2026-03-03 09:00 UTC  AM  twice     voided",
         "",
         CAUTION,
     ]

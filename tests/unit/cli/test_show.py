@@ -38,7 +38,7 @@ def test_card_of_nothing_is_empty() -> None:
         (False, "no"),
         (PointKind.SEWER, "sewer connection"),
         (Quantity("60", "L", "2 %"), "60 L ± 2 %"),
-        (datetime(2026, 3, 1, 14, 30, tzinfo=UTC), "2026-03-01 14:30+00:00"),
+        (datetime(2026, 3, 1, 14, 30, tzinfo=UTC), "2026-03-01 14:30 UTC"),
         (datetime(2026, 3, 1, 14, 30, 5, tzinfo=UTC).replace(tzinfo=None), "2026-03-01 14:30:05"),
         (date(2026, 3, 1), "2026-03-01"),
         (("a", "b\x07"), "a, b\\x07"),
