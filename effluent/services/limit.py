@@ -117,7 +117,7 @@ def amend(
         answer(writing, _beside(writing, new), accept=accept)
         return replace(new, entered_by=by, verified_by=None, verified_on=None)
 
-    return _change(ledger, code, change, by=by, action="amend limit", reason=reason)
+    return _change(ledger, code, change, by=by, action=f"amend limit {code}", reason=reason)
 
 
 def verify(ledger: Ledger, code: str, *, by: str, reason: str = "") -> str:
@@ -139,7 +139,7 @@ def verify(ledger: Ledger, code: str, *, by: str, reason: str = "") -> str:
         site = writing.value("site", writing.value("point", old.point).site)
         return replace(old, verified_by=by, verified_on=local_day(ledger.clock(), site))
 
-    return _change(ledger, code, change, by=by, action="verify limit", reason=reason)
+    return _change(ledger, code, change, by=by, action=f"verify limit {code}", reason=reason)
 
 
 def retire(ledger: Ledger, code: str, last_day: date, *, by: str, reason: str) -> str:
@@ -160,7 +160,7 @@ def retire(ledger: Ledger, code: str, last_day: date, *, by: str, reason: str) -
             raise StateRefused(f"limit {code}", state, "nothing is left to retire; amend it to extend it")
         return _checked(replace(old, effective_to=last_day))
 
-    return _change(ledger, code, change, by=by, action="retire limit", reason=reason)
+    return _change(ledger, code, change, by=by, action=f"retire limit {code}", reason=reason)
 
 
 def listing(

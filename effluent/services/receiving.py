@@ -46,7 +46,7 @@ class Receiving:
             Names the file in what is said of its rows, if there are several.
         """
         self._bottles.learn(batch.columns["sample"])
-        supersedes, repeated = self._repeats.on_record(batch)
+        supersedes, repeated = self._repeats.on_record(batch, self._bottles)
         found = [*batch.errors, *self._wrong_samples(batch), *repeated]
         self._keep(sorted(found, key=lambda error: error.row), prefix)
         if not self._errors:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Container, Iterator
 from itertools import compress
 from typing import Any, NamedTuple
 
@@ -43,8 +43,8 @@ class Repeats:
         self._hashes: list[NDArray[np.int64]] = []
         self._first: dict[Key, str] = {}
 
-    def on_record(self, batch: Batch) -> tuple[list[int | None], list[RowError]]:
-        """Return which result each one supersedes, and what is refused as being on record."""
+    def on_record(self, batch: Batch, known: Container[str]) -> tuple[list[int | None], list[RowError]]:
+        """Return which result each one of known samples supersedes, and what is refused as on record."""
         keys = _keys(batch)
         self._hashes.append(np.fromiter(map(hash, _good(keys, batch)), dtype=np.int64))
         standing = self._standing(batch)
@@ -54,7 +54,7 @@ class Repeats:
         errors = []
         for at, (key, earlier) in enumerate(zip(keys, batch.columns["reissue_of"], strict=True)):
             found = standing.get(key)
-            if at in batch.bad or (found is None and not earlier):
+            if at in batch.bad or key[0] not in known or (found is None and not earlier):
                 continue
             if found is not None and found.report == earlier != "":
                 supersedes[at] = found.number

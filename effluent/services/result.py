@@ -100,7 +100,7 @@ def void(ledger: Ledger, number: int, *, by: str, reason: str) -> None:
 def listing(
     ledger: Ledger, wanted: Wanted | None = None, *, analyte: str = "", as_of: str | None = None
 ) -> tuple[Listed, ...]:
-    """Return the results that stand, by sample and then in the order recorded.
+    """Return the results that stand, in the order recorded.
 
     Parameters
     ----------
