@@ -55,7 +55,7 @@ def long_rows(stage: Stage, sending: Sending) -> list[Row]:
         for bottle in sending.bottles
         for finding in analytes
     ]
-    blank = (*rows[0][:3], f"<{analytes[0].limit:g}".replace(".", ","), *rows[0][4:-1], _BLANK)
+    blank = ("BRANCO-1", *rows[0][1:3], f"<{analytes[0].limit:g}".replace(".", ","), *rows[0][4:-1], _BLANK)
     return [blank, *rows]
 
 

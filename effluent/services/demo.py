@@ -71,7 +71,8 @@ def _play(folder: Path, seed: int) -> Facts:
         (laboratory / f"{name}.toml").write_bytes(mapping(name))
     clock, place = Clock(), str(folder / LEDGER)
     create(place, _FIRST, number=f"demo-{seed}", clock=clock)
-    with open_ledger(place, clock=clock) as book:
+    # A connection that stays open keeps SQLite from tidying up after each of some 400 entries.
+    with open_ledger(place, clock=clock) as book, book.connection():
         return perform(Stage(book, clock, Random(seed)), folder)
 
 

@@ -24,7 +24,7 @@ __all__ = ["Facts", "perform"]
 _WEEKS = 104
 _ROUNDS = (12, 25, 38, 51, 64, 77, 90, 102)
 _GRIT = (8, 60)
-_RAIN, _MISREAD, _FAULTY, _OVER, _SHIPMENT, _UNVERIFIED, _UNDETERMINED = 21, 30, 64, 77, 86, 88, 90
+_RAIN, _MISREAD, _NEAR, _FAULTY, _OVER, _SHIPMENT, _UNVERIFIED, _UNDETERMINED = 21, 30, 51, 64, 77, 86, 88, 90
 _NO_BOTTLE = Bottle("", "", "", datetime.combine(FIRST_DAY, time()))
 _FIRST_PERSON, _OFFICER, _DEPUTY = "AM", "RS", "LK"
 
@@ -41,12 +41,13 @@ class Facts:
     misread_entry: int = 0
     refused_file: str = ""
     refusal: str = ""
+    near: Bottle = _NO_BOTTLE
     over: Bottle = _NO_BOTTLE
     undetermined: Bottle = _NO_BOTTLE
     late_limit: str = ""
     returned: str = ""
     draft: str = ""
-    open_tank: str = ""
+    waiting_tank: str = ""
     files: list[str] = field(default_factory=list)
     papers: list[str] = field(default_factory=list)
     outcomes: Counter[Outcome] = field(default_factory=Counter)
@@ -123,7 +124,7 @@ class _Years:
         """Draft the last manifest and note how the ledger stands."""
         facts, book = self.facts, self.stage.book
         facts.draft = draft(self.saltgrass, self.stored["SGP"], facts.last_day, self.paper)
-        facts.open_tank = self.cabo.tank
+        facts.waiting_tank = self.sent["CVL"][0].source
         facts.files, facts.papers = self.post.files, sorted(path.name for path in self.paper.iterdir())
         facts.outcomes = Counter(verdict.outcome for verdict in check(book).verdicts)
         facts.witness = self._witness()
@@ -150,9 +151,12 @@ class _Years:
 
     def _sample(self, week: int, day: date) -> None:
         for station in (self.cabo, self.saltgrass):
-            bottles = station.close_quarter(day, all_drums=week in (_OVER, _ROUNDS[-1]))
+            bottles = station.close_quarter(day, all_drums=week in (_NEAR, _OVER, _ROUNDS[-1]))
             self.sent[station.place.site] = bottles
             self.stored[station.place.site] += [each.source for each in bottles if each.kind == "drum"]
+        if week == _NEAR:
+            self.facts.near = _first_drum(self.sent["CVL"])
+            self.post.told[self.facts.near.code, "Zn"] = "1650.0"
         if week == _OVER:
             self.facts.over = _first_drum(self.sent["CVL"])
             self.post.told[self.facts.over.code, "Cadmium"] = "0.138"

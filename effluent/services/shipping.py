@@ -9,13 +9,13 @@ from pathlib import Path
 from effluent.domain import Manifest, ManifestLine
 from effluent.services import manifest
 from effluent.services.load import proposed
+from effluent.services.scenario import standing
 from effluent.services.sheet import pdf
 from effluent.services.station import Station
 
 __all__ = ["draft", "ship"]
 
 _DESK, _OFFICER = "TC", "RS"
-_DESCRIPTION = "Wash water of turbine engines with gas-path cleaner (invented description)"
 _ACCEPT = "cadmium is over the sewer limit: that is why this water is hauled and not released"
 _SIGNED_BY = "M. Ferro (invented), Murre Basin Treatment Works"
 
@@ -55,6 +55,14 @@ def _manifest(station: Station, drums: Sequence[str], carriers: tuple[str, ...])
         emergency_phone="",
         special_handling="Invented demo: nothing is to be moved on this paper.",
         lines=tuple(
-            ManifestLine(container=drum, description=_DESCRIPTION, quantity=proposed()) for drum in drums
+            ManifestLine(
+                container=drum, description=_description(station.cleaners[drum]), quantity=proposed()
+            )
+            for drum in sorted(drums)
         ),
     )
+
+
+def _description(cleaner: str) -> str:
+    kind = next(record.type for record in standing() if record.code == cleaner)
+    return f"Turbine-engine wash water with {kind} cleaner (invented description)"

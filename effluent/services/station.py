@@ -55,13 +55,17 @@ class Bottle:
 
 @dataclass
 class Station:
-    """What a station knows of itself while the two years pass; levels are whole litres."""
+    """What a station knows of itself while the two years pass.
+
+    ``levels`` are whole litres; ``cleaners`` says which cleaner went into a drum.
+    """
 
     stage: Stage
     place: Place
     levels: dict[str, int] = field(default_factory=dict)
     open_drums: dict[str, str] = field(default_factory=dict)
     closed_drums: list[str] = field(default_factory=list)
+    cleaners: dict[str, str] = field(default_factory=dict)
     quarter: int = 0
     drum_count: int = 0
 
@@ -162,6 +166,7 @@ class Station:
             code=code, kind=ContainerKind.DRUM, site=self.place.site, capacity=size, material="steel"
         )
         self.open_drums[cleaner] = register.add(self.stage.book, new, by=self.place.supervisor)
+        self.cleaners[code] = cleaner
         return code
 
     def _sample(self, kind: str, source: str, day: date, number: int) -> Bottle:

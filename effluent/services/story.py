@@ -5,6 +5,7 @@ from __future__ import annotations
 import shlex
 from datetime import timedelta
 from pathlib import Path
+from textwrap import fill
 
 from effluent.domain import Outcome
 from effluent.services.play import Facts
@@ -12,6 +13,8 @@ from effluent.services.scenario import page
 from effluent.settings import CAUTION
 
 __all__ = ["LEDGER", "tell"]
+
+_WIDTH = 116
 
 LEDGER = "demo.ledger"
 """Name of the ledger in the folder of the demo."""
@@ -32,14 +35,14 @@ def tell(facts: Facts, folder: Path, *, program: str = "effluent") -> str:
     laboratory, paper = folder / "laboratory", folder / "paper"
     return page("story").format(
         **_told(facts),
-        caution=CAUTION,
+        caution=fill(CAUTION, _WIDTH),
         program=program,
         folder=folder,
         ledger_name=folder / LEDGER,
         ledger=_quoted(folder / LEDGER),
         laboratory_name=laboratory,
-        refused=_quoted(laboratory / facts.refused_file),
-        layout=_quoted(laboratory / "ribeira.toml"),
+        workbook=_quoted(laboratory / facts.files[-1]),
+        layout=_quoted(laboratory / "sandgate.toml"),
         issued=_quoted(paper / f"{facts.draft}-issued.pdf"),
         papers="\n".join(f"  {paper / name}" for name in facts.papers),
     )
@@ -57,7 +60,9 @@ def _told(facts: Facts) -> dict[str, object]:
         "misread_wash": facts.misread_wash,
         "misread_entry": facts.misread_entry,
         "refused_file": facts.refused_file,
-        "refusal": "\n".join(f"             {line}" for line in facts.refusal.splitlines()[1:]),
+        "refusal": "\n".join(_wrapped(line.strip()) for line in facts.refusal.splitlines()[1:]),
+        "near_drum": facts.near.source,
+        "near_sample": facts.near.code,
         "over_drum": facts.over.source,
         "over_sample": facts.over.code,
         "held_tote": facts.undetermined.source,
@@ -65,12 +70,16 @@ def _told(facts: Facts) -> dict[str, object]:
         "late_limit": facts.late_limit,
         "returned": facts.returned,
         "draft": facts.draft,
-        "open_tank": facts.open_tank,
+        "waiting_tank": facts.waiting_tank,
         "number": facts.number,
         "entries": facts.entries,
         "digest": facts.digest,
         "witness": f"{facts.witness[0]}:{facts.witness[1][:16]}",
     }
+
+
+def _wrapped(text: str) -> str:
+    return fill(text, _WIDTH, initial_indent=" " * 15, subsequent_indent=" " * 17)
 
 
 def _quoted(path: Path) -> str:
