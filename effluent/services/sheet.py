@@ -25,7 +25,7 @@ from effluent.domain import (
     Statistic,
     Verdict,
 )
-from effluent.errors import FileMissing, StorageFailed, WouldOverwrite
+from effluent.errors import StorageFailed
 from effluent.paper.manifest import render
 from effluent.paper.sheet import Generator, LaboratoryRow, ManifestSheet, OriginRow, Party, SheetLine
 from effluent.reference.code import container_code, container_codes, unit_code, unit_codes
@@ -33,6 +33,8 @@ from effluent.services.container import Origin
 from effluent.services.moment import local_day
 from effluent.services.question import accepted_because
 from effluent.services.release import Cargo, cargo_of, missing_links
+from effluent.store.backup import appearing
+from effluent.store.database import refuse_taken
 from effluent.store.ledger import Ledger
 from effluent.store.reading import Reading, Version
 
@@ -77,7 +79,9 @@ def pdf(ledger: Ledger, code: str, target: str, *, paper: str = "A4", as_of: str
     if latest.value.state is not ManifestState.DRAFT:
         with ledger.reading(str(latest.entry.sequence)) as reading:
             worded = sheet(reading, latest.value)
-    _write(Path(target), render(worded, paper=paper))
+    content = render(worded, paper=paper)
+    with appearing(target) as unfinished:
+        unfinished.write_bytes(content)
 
 
 def sheet(reading: Reading, manifest: Manifest) -> ManifestSheet:
@@ -249,26 +253,6 @@ def check_target(target: str) -> None:
     WouldOverwrite, FileMissing, StorageFailed
     """
     path = Path(target)
-    try:
-        if path.exists():
-            raise WouldOverwrite(path)
-        if not path.absolute().parent.is_dir():
-            raise FileMissing(path.absolute().parent, "make the folder first")
-    except OSError as error:
-        raise StorageFailed(path, error.strerror or str(error)) from error
-
-
-def _write(path: Path, content: bytes) -> None:
-    unfinished = path.with_name(f".{path.name}.{os.getpid()}.unfinished")
-    try:
-        with unfinished.open("wb") as file:
-            file.write(content)
-            file.flush()
-            os.fsync(file.fileno())
-        os.link(unfinished, path)
-    except FileExistsError as error:
-        raise WouldOverwrite(path) from error
-    except OSError as error:
-        raise StorageFailed(path, error.strerror or str(error)) from error
-    finally:
-        unfinished.unlink(missing_ok=True)
+    refuse_taken(path)
+    if not os.access(path.absolute().parent, os.W_OK):
+        raise StorageFailed(path, "the folder takes no new file")

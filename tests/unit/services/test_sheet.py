@@ -175,23 +175,31 @@ def test_file_in_the_way_is_never_overwritten(book: Ledger, tmp_path: Path) -> N
     assert [(each.name, each.read_text()) for each in tmp_path.glob("*.pdf")] == [("paper.pdf", "mine")]
 
 
-def test_place_that_takes_no_file_is_refused(tmp_path: Path) -> None:
+def test_place_that_takes_no_file_is_refused(book: Ledger, tmp_path: Path) -> None:
+    code = drafted(book)
     with pytest.raises(FileMissing, match="make the folder first"):
         check_target(str(tmp_path / "none" / "paper.pdf"))
     with pytest.raises(StorageFailed):
-        check_target(str(tmp_path / ("x" * 300)))
+        pdf(book, code, str(tmp_path / ("x" * 300)))
+
+
+def test_folder_that_takes_no_file_is_refused(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    # The tests may run as a user whom no mode of a folder stops.
+    monkeypatch.setattr("effluent.services.sheet.os.access", lambda *_: False)
+    with pytest.raises(StorageFailed, match="takes no new file"):
+        check_target(str(tmp_path / "paper.pdf"))
 
 
 def test_full_disk_leaves_nothing_behind(
     book: Ledger, tmp_path: Path, monkeypatch: pytest.MonkeyPatch
 ) -> None:
-    def fail(_: int) -> None:
-        raise OSError(28, "No space left on device")
+    def fail(_: Path, content: bytes) -> None:
+        raise OSError(28, f"No space left on device for {len(content)} bytes")
 
     code = drafted(book)
     folder = tmp_path / "papers"
     folder.mkdir()
-    monkeypatch.setattr("effluent.services.sheet.os.fsync", fail)
+    monkeypatch.setattr(Path, "write_bytes", fail)
     with pytest.raises(StorageFailed, match="No space left"):
         pdf(book, code, str(folder / "paper.pdf"))
     assert list(folder.iterdir()) == []
