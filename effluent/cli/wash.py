@@ -156,6 +156,8 @@ def _by_month(totals: dict[tuple[str, str, str], Balance]) -> str:
 
 
 def _flag(each: Balanced) -> str:
+    if not each.balance.put_in:
+        return "nothing put in"
     return "no threshold" if each.flagged is None else str(each.flagged)
 
 

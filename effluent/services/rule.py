@@ -62,6 +62,10 @@ def questions(reading: Reading, wash: Wash) -> Iterator[str]:
             f"more was caught ({wash.caught}) than put in ({float(result.put_in):g} L): "
             "rain, or water from another source?"
         )
+    same = {"engine": wash.engine, "performed_at": wash.performed_at, "kind": wash.kind}
+    for other in reading.values("wash", **same):
+        if other.code != wash.code:
+            yield f"{other.code} is a {wash.kind} of engine {wash.engine} at that time too: logged twice?"
 
 
 def _check_grit(wash: Wash) -> None:
