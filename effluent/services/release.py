@@ -10,6 +10,7 @@ from typing import NamedTuple
 from effluent.domain import Manifest, Outcome, Sample, Verdict
 from effluent.services.check import verdicts_for
 from effluent.services.container import Contents, contents_of
+from effluent.services.shipment import shipped_containers
 from effluent.store.reading import Reading
 
 __all__ = ["Cargo", "adverse", "cargo_of", "filled_at", "missing_links"]
@@ -42,12 +43,12 @@ def filled_at(contents: Contents) -> datetime | None:
 
 
 def missing_links(reading: Reading, manifest: Manifest) -> tuple[str, ...]:
-    """Return every link that a manifest lacks before it can be issued, one sentence each.
+    """Return every link that a draft lacks before it can be issued, one sentence each.
 
     Records that stand are never without those they refer to; the store sees to that.
     """
     of_containers = (_missing_of(reading, cargo_of(reading, line.container)) for line in manifest.lines)
-    return (*_missing_facts(manifest), *chain.from_iterable(of_containers))
+    return (*_missing_facts(manifest), *_gone(reading, manifest), *chain.from_iterable(of_containers))
 
 
 def adverse(reading: Reading, manifest: Manifest) -> tuple[str, ...]:
@@ -73,6 +74,15 @@ def _missing_facts(manifest: Manifest) -> Iterator[str]:
         yield "no carrier is named"
     if not manifest.emergency_phone:
         yield f"no emergency telephone is named, neither here nor at site {manifest.site}"
+
+
+def _gone(reading: Reading, manifest: Manifest) -> list[str]:
+    shipped = shipped_containers(reading)
+    return [
+        f"container {line.container}: it was shipped on another manifest"
+        for line in manifest.lines
+        if line.container in shipped
+    ]
 
 
 def _missing_of(reading: Reading, cargo: Cargo) -> Iterator[str]:

@@ -119,6 +119,7 @@ def test_issued_and_returned_containers_are_shipped(book: Ledger) -> None:
     assert shipped(book) == []
     manifests.issue(book, code, by="AM")
     assert shipped(book) == ["D-1", "D-2"]
+    assert missing(book, "D-1") == ("container D-1: it was shipped on another manifest",)
     manifests.returned(book, code, by="AM", on=NOW.date(), signed_by="K. Invented")
     assert shipped(book) == ["D-1", "D-2"]
     manifests.void(book, code, by="AM", reason="wrong site")
