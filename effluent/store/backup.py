@@ -60,7 +60,7 @@ def appearing(target: str) -> Iterator[Path]:
     """
     path = Path(target)
     refuse_taken(path)
-    unfinished = path.with_name(f".{path.name}.{secrets.token_hex(4)}.unfinished")
+    unfinished = path.with_name(f".{path.name[:40]}.{secrets.token_hex(4)}.unfinished")
     try:
         yield unfinished
         with unfinished.open("rb+") as written:
@@ -71,8 +71,10 @@ def appearing(target: str) -> Iterator[Path]:
     except OSError as error:
         raise StorageFailed(path, error.strerror or str(error)) from error
     finally:
-        for leftover in ("", "-wal", "-shm", "-journal"):
-            Path(f"{unfinished}{leftover}").unlink(missing_ok=True)
+        for ending in ("", "-wal", "-shm", "-journal"):
+            leftover = Path(f"{unfinished}{ending}")
+            if leftover.exists():  # a folder that cannot be written refuses even to remove nothing
+                leftover.unlink()
 
 
 def _name(unfinished: Path, path: Path) -> None:

@@ -148,15 +148,19 @@ def translated(place: str) -> Iterator[None]:
         raise _meaning(place, error) from error
     except sqlite3.Error as error:
         raise _meaning_of(place, str(error)) from error
+    except UnicodeDecodeError as error:
+        raise LedgerDamaged(shown(place), "it holds text that is not UTF-8") from error
 
 
 def _meaning(place: str, error: DBAPIError) -> Exception:
     if is_server(place) and (error.connection_invalidated or getattr(error.orig, "sqlstate", "") is None):
         return ServerMissing(shown(place), " ".join(str(error.orig).split())[:300])
+    meaning = _meaning_of(place, str(error.orig))
+    if isinstance(meaning, StoreError):
+        return meaning
     if "append-only" in str(error.orig):
         return StoreError("the ledger is append-only: nothing in it is changed or deleted")
-    meaning = _meaning_of(place, str(error.orig))
-    return meaning if isinstance(meaning, StoreError) else error
+    return error
 
 
 def _meaning_of(place: str, message: str) -> Exception:
