@@ -9,14 +9,13 @@ from datetime import date, datetime
 from pathlib import Path
 from typing import NamedTuple
 
-from effluent.domain import Manifest, ManifestLine, ManifestState
+from effluent.domain import Manifest, ManifestLine, ManifestState, Site
 from effluent.errors import ChainBroken, FileMissing, RecordMissing, StateRefused, ValueRefused
-from effluent.services.container import contents_of
 from effluent.services.load import doubts, prepared
 from effluent.services.moment import local_day
 from effluent.services.question import answer
 from effluent.services.register import need_reason
-from effluent.services.release import adverse, filled_at, missing_links
+from effluent.services.release import Cargo, adverse, cargos_of, filled_at, missing_links
 from effluent.store.ledger import Ledger
 from effluent.store.reading import Reading, Version
 from effluent.store.writing import Writing
@@ -160,12 +159,13 @@ def issue(ledger: Ledger, code: str, *, by: str, on: date | None = None, accept:
 
     def job(writing: Writing) -> None:
         manifest = _in_state(writing, code, ManifestState.DRAFT)
-        if missing := missing_links(writing, manifest):
+        cargos = cargos_of(writing, manifest)
+        if missing := missing_links(writing, manifest, cargos):
             raise ChainBroken(f"issuing manifest {code}", missing)
         day = _day(writing, manifest, on, ledger.clock())
-        _check_filled_before(writing, manifest, day)
+        _check_filled_before(cargos, day, writing.value("site", manifest.site))
         ready = prepared(writing, manifest)
-        answer(writing, (*doubts(writing, ready), *adverse(writing, ready)), accept=accept)
+        answer(writing, (*doubts(writing, ready), *adverse(cargos)), accept=accept)
         writing.amend(replace(ready, state=ManifestState.ISSUED, issued_on=day))
 
     ledger.write(job, by=by, action="issue manifest")
@@ -241,8 +241,9 @@ def show(ledger: Ledger, code: str, *, as_of: str | None = None) -> Shown:
         value: Manifest = versions[-1].value
         if value.state is not ManifestState.DRAFT:
             return Shown(value, versions, (), ())
-        missing = missing_links(reading, value)
-        open_questions = () if missing else (*doubts(reading, value), *adverse(reading, value))
+        cargos = cargos_of(reading, value)
+        missing = missing_links(reading, value, cargos)
+        open_questions = () if missing else (*doubts(reading, value), *adverse(cargos))
         return Shown(value, versions, missing, open_questions)
 
 
@@ -289,12 +290,11 @@ def _day(reading: Reading, manifest: Manifest, on: date | None, now: datetime) -
     return on or today
 
 
-def _check_filled_before(reading: Reading, manifest: Manifest, day: date) -> None:
-    site = reading.value("site", manifest.site)
-    for line in manifest.lines:
-        last = filled_at(contents_of(reading, line.container))
+def _check_filled_before(cargos: Sequence[Cargo], day: date, site: Site) -> None:
+    for cargo in cargos:
+        last = filled_at(cargo.contents)
         if last is not None and local_day(last, site) > day:
-            remedy = f"water went into container {line.container} on {local_day(last, site)}"
+            remedy = f"water went into container {cargo.contents.container.code} on {local_day(last, site)}"
             raise ValueRefused("day", day.isoformat(), remedy)
 
 

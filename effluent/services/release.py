@@ -13,7 +13,7 @@ from effluent.services.container import Contents, contents_of
 from effluent.services.shipment import shipped_containers
 from effluent.store.reading import Reading
 
-__all__ = ["Cargo", "adverse", "cargo_of", "filled_at", "missing_links"]
+__all__ = ["Cargo", "adverse", "cargo_of", "cargos_of", "filled_at", "missing_links"]
 
 _OPEN = (Outcome.OVER, Outcome.UNDETERMINED)
 
@@ -42,22 +42,27 @@ def filled_at(contents: Contents) -> datetime | None:
     return max(fills, default=None)
 
 
-def missing_links(reading: Reading, manifest: Manifest) -> tuple[str, ...]:
+def cargos_of(reading: Reading, manifest: Manifest) -> tuple[Cargo, ...]:
+    """Return what every container of a manifest carries, in the order of its lines."""
+    return tuple(cargo_of(reading, line.container) for line in manifest.lines)
+
+
+def missing_links(reading: Reading, manifest: Manifest, cargos: Iterable[Cargo]) -> tuple[str, ...]:
     """Return every link that a draft lacks before it can be issued, one sentence each.
 
     Records that stand are never without those they refer to; the store sees to that.
     """
-    of_containers = (_missing_of(reading, cargo_of(reading, line.container)) for line in manifest.lines)
+    of_containers = (_missing_of(reading, cargo) for cargo in cargos)
     return (*_missing_facts(manifest), *_gone(reading, manifest), *chain.from_iterable(of_containers))
 
 
-def adverse(reading: Reading, manifest: Manifest) -> tuple[str, ...]:
+def adverse(cargos: Iterable[Cargo]) -> tuple[str, ...]:
     """Return the verdicts over a limit or undetermined, one sentence each."""
     return tuple(
-        f"container {line.container}, sample {', '.join(verdict.samples)}: {verdict.limit.analyte}"
-        f" {verdict.limit.fraction} {verdict.outcome} ({verdict.reason})"
-        for line in manifest.lines
-        for verdict in cargo_of(reading, line.container).verdicts
+        f"container {cargo.contents.container.code}, sample {', '.join(verdict.samples)}:"
+        f" {verdict.limit.analyte} {verdict.limit.fraction} {verdict.outcome} ({verdict.reason})"
+        for cargo in cargos
+        for verdict in cargo.verdicts
         if verdict.outcome in _OPEN
     )
 

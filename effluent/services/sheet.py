@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import os
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import replace
 from datetime import datetime
 from fractions import Fraction
@@ -32,7 +32,7 @@ from effluent.reference.code import container_code, container_codes, unit_code, 
 from effluent.services.container import Origin
 from effluent.services.moment import local_day
 from effluent.services.question import accepted_because
-from effluent.services.release import Cargo, cargo_of, missing_links
+from effluent.services.release import Cargo, cargos_of, missing_links
 from effluent.store.backup import appearing
 from effluent.store.database import refuse_taken
 from effluent.store.ledger import Ledger
@@ -87,7 +87,7 @@ def pdf(ledger: Ledger, code: str, target: str, *, paper: str = "A4", as_of: str
 def sheet(reading: Reading, manifest: Manifest) -> ManifestSheet:
     """Return everything that the paper of a manifest says, in words, as of a view of the ledger."""
     site: Site = reading.value("site", manifest.site)
-    cargos = [cargo_of(reading, line.container) for line in manifest.lines]
+    cargos = cargos_of(reading, manifest)
     head = reading.head
     return ManifestSheet(
         code=manifest.code,
@@ -100,7 +100,7 @@ def sheet(reading: Reading, manifest: Manifest) -> ManifestSheet:
         origins=tuple(_origin(cargo, origin, site) for cargo in cargos for origin in cargo.contents.origins),
         special_handling=manifest.special_handling,
         issued_on=manifest.issued_on.isoformat() if manifest.issued_on else "",
-        state_note=_state_note(reading, manifest),
+        state_note=_state_note(reading, manifest, cargos),
         tracking_number=manifest.tracking_number,
         ledger_id=reading.ledger_number,
         entry=head.sequence,
@@ -130,7 +130,7 @@ def _party(company: Company) -> Party:
     )
 
 
-def _lines(manifest: Manifest, cargos: list[Cargo]) -> tuple[SheetLine, ...]:
+def _lines(manifest: Manifest, cargos: Sequence[Cargo]) -> tuple[SheetLine, ...]:
     """Return one line for all containers of equal description, waste codes, type and unit."""
     merged: dict[tuple[str, ...], SheetLine] = {}
     for line, cargo in zip(manifest.lines, cargos, strict=True):
@@ -219,9 +219,9 @@ def _litres(volume: Fraction) -> str:
     return f"{decimal_text(round(volume, 1))} L"
 
 
-def _state_note(reading: Reading, manifest: Manifest) -> str:
+def _state_note(reading: Reading, manifest: Manifest, cargos: Sequence[Cargo]) -> str:
     if manifest.state is ManifestState.DRAFT:
-        missing = len(missing_links(reading, manifest))
+        missing = len(missing_links(reading, manifest, cargos))
         links = f"{missing} link{'s' if missing != 1 else ''}"
         return f"Cannot be issued yet: {links} of the chain missing." if missing else ""
     said = [_said(version) for version in reading.versions("manifest", manifest.code)]

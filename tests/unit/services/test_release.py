@@ -7,7 +7,7 @@ import pytest
 
 from effluent.domain import Movement, MovementKind, Quantity
 from effluent.services import manifest as manifests
-from effluent.services.release import adverse, cargo_of, missing_links
+from effluent.services.release import adverse, cargo_of, cargos_of, missing_links
 from effluent.services.shipment import shipped_containers
 from effluent.store.ledger import Ledger
 from effluent.store.writing import Writing
@@ -24,7 +24,8 @@ def book(ledger_place: str) -> Iterator[Ledger]:
 
 def missing(book: Ledger, *containers: str) -> tuple[str, ...]:
     with book.reading() as reading:
-        return missing_links(reading, manifest(*(line(each, "150 L") for each in containers)))
+        wanted = manifest(*(line(each, "150 L") for each in containers))
+        return missing_links(reading, wanted, cargos_of(reading, wanted))
 
 
 def shipped(book: Ledger) -> list[str]:
@@ -75,7 +76,7 @@ def test_every_container_is_looked_at(book: Ledger) -> None:
 
 def test_manifest_itself_can_lack_facts(book: Ledger) -> None:
     with book.reading() as reading:
-        found = missing_links(reading, manifest(carriers=(), emergency_phone=""))
+        found = missing_links(reading, manifest(carriers=(), emergency_phone=""), ())
     assert found == (
         "no container is named",
         "no carrier is named",
@@ -107,7 +108,7 @@ def test_over_and_undetermined_are_adverse(book: Ledger) -> None:
     ready(book, "D-1", cadmium="0.12")
     ready(book, "D-2")
     with book.reading() as reading:
-        found = adverse(reading, manifest(line("D-1", "150 L"), line("D-2", "150 L")))
+        found = adverse(cargo_of(reading, container) for container in ("D-1", "D-2"))
     assert found == (
         "container D-1, sample S-0001: cadmium total over (0.12 mg/L is above the limit 0.11 mg/L)",
     )
