@@ -20,6 +20,7 @@ from effluent.store.reading import Reading
 __all__ = ["MOST_CODES", "doubts", "prepared", "proposed"]
 
 MOST_CODES = 6
+_TOO_MUCH = 10**7  # of any unit; no vehicle carries it
 # 40 CFR 262.21(f)(2): nine digits and the three letters of the registered printer.
 _TRACKING_NUMBER = re.compile(r"[0-9]{9}[A-Z]{3}")
 _UNITED_STATES = {"us", "usa", "united states", "united states of america"}
@@ -124,7 +125,7 @@ def _quantity(reading: Reading, line: ManifestLine) -> Quantity:
     if not line.quantity.text:
         return _proposal(reading, line)
     amount = line.quantity.magnitude
-    if amount.denominator != 1 or amount <= 0 or line.quantity.spread:
+    if amount.denominator != 1 or not 0 < amount < _TOO_MUCH or line.quantity.spread:
         remedy = "the form takes whole units above zero, as in '190 L'; round to the nearest one"
         raise ValueRefused(f"quantity of container {line.container}", str(line.quantity), remedy)
     return Quantity(str(amount.numerator), line.quantity.unit)

@@ -60,7 +60,7 @@ def test_nothing_is_proposed_for_an_empty_container(book: Ledger) -> None:
 
 def test_quantity_is_whole_above_zero_and_in_a_unit_of_the_form(book: Ledger) -> None:
     # EPA form 8700-22, instructions for items 11 and 12: whole numbers, no decimals; the units of Table II.
-    for quantity in ("150.5 L", "0 L", "-3 L", "150 ± 1 L"):
+    for quantity in ("150.5 L", "0 L", "-3 L", "150 ± 1 L", "1e99 L"):
         assert "the form takes whole units above zero" in refusal(book, manifest(line("D-1", quantity)))
     with pytest.raises(UnitUnknown, match="the manifest form takes"):
         prepare(book, manifest(line("D-1", "150000 mL")))
