@@ -9,8 +9,9 @@ from datetime import date
 from enum import StrEnum
 from fractions import Fraction as Rational
 
+from effluent.calc.figure import Figure
 from effluent.calc.observation import Observation
-from effluent.domain import BrokenBy, Qualifier
+from effluent.domain import BrokenBy
 from effluent.errors import ValueRefused
 
 __all__ = [
@@ -47,10 +48,13 @@ class MonthCounts(StrEnum):
 
 @dataclass(frozen=True, kw_only=True)
 class Measurement:
-    """One measurement held against one numeric limit of its analyte, in one unit."""
+    """One result, daily value or average held against one numeric limit of its analyte, in one unit.
+
+    ``day`` is the one it counts for: of an average the last day of its window.
+    """
 
     day: date
-    observation: Observation
+    observed: Observation | Figure
     limit: Rational
 
 
@@ -196,8 +200,8 @@ def significant_noncompliance(
     -----
     40 CFR 403.8(f)(2)(viii)(A): 66 % or more of all measurements of a pollutant in six months exceed a
     numeric requirement; (B): 33 % or more equal or exceed the limit times the factor [1]_. Integers and
-    exact fractions only. A non-detect whose bound lies beyond a line breaks it possibly, never surely. (C)
-    to (H) of the rule are judgements and dates, and not computed here.
+    exact fractions only. What rests on non-detects breaks a line surely if its lower bound does, and possibly
+    if its upper bound lies beyond. (C) to (H) of the rule are judgements and dates, and not computed here.
 
     References
     ----------
@@ -260,7 +264,7 @@ def _window(measurements: Sequence[Measurement], first: date, last: date, rule: 
 
 
 def _share(measurements: Sequence[Measurement], factor: Rational, broken_by: BrokenBy, percent: int) -> Share:
-    hits = [_hits(one.observation, one.limit * factor, broken_by) for one in measurements]
+    hits = [_hits(one.observed, one.limit * factor, broken_by) for one in measurements]
     return Share(
         count=len(hits),
         surely=sum(surely for surely, _ in hits),
@@ -269,15 +273,13 @@ def _share(measurements: Sequence[Measurement], factor: Rational, broken_by: Bro
     )
 
 
-def _hits(observation: Observation, line: Rational, broken_by: BrokenBy) -> tuple[bool, bool]:
-    """Return whether the truth surely, and possibly, breaks a line; it never equals a bound."""
-    value = observation.value
-    if observation.qualifier == Qualifier.BELOW:
-        return False, value > line
-    if observation.qualifier == Qualifier.ABOVE:
-        return value >= line, True
-    broken = value >= line if broken_by == BrokenBy.REACHING else value > line
-    return broken, broken
+def _hits(observed: Observation | Figure, line: Rational, broken_by: BrokenBy) -> tuple[bool, bool]:
+    """Return whether the truth surely, and possibly, breaks a line; it never equals an open bound."""
+    low, high = observed.low, observed.high
+    if high is None:
+        return low >= line, True
+    surely = low >= line if broken_by == BrokenBy.REACHING else low > line
+    return surely, surely if low == high else high > line
 
 
 def _month_end(year: int, month: int) -> date:

@@ -32,9 +32,7 @@ HALF = (date(2026, 1, 1), date(2026, 6, 30))
 
 def judged(values, limit, **changed):
     measurements = [
-        Measurement(
-            day=date(2026, 3, 2), observation=Observation(value=Rational(value)), limit=Rational(limit)
-        )
+        Measurement(day=date(2026, 3, 2), observed=Observation(value=Rational(value)), limit=Rational(limit))
         for value in values
     ]
     (window,) = significant_noncompliance(measurements, [HALF], criteria=Criteria(**changed))

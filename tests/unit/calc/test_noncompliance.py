@@ -5,6 +5,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
+from effluent.calc.figure import Figure
 from effluent.calc.noncompliance import (
     Criteria,
     Finding,
@@ -16,7 +17,7 @@ from effluent.calc.noncompliance import (
     rolling_quarters,
     significant_noncompliance,
 )
-from effluent.calc.observation import Observation
+from effluent.calc.observation import Observation, Standing
 from effluent.domain import BrokenBy, Qualifier
 from effluent.errors import ValueRefused
 
@@ -27,7 +28,7 @@ SPAN = (date(2026, 1, 1), date(2026, 6, 30))
 def measured(*values, limit="0.11", qualifier=Qualifier.EQUAL):
     return [
         Measurement(
-            day=DAY, observation=Observation(value=Rational(v), qualifier=qualifier), limit=Rational(limit)
+            day=DAY, observed=Observation(value=Rational(v), qualifier=qualifier), limit=Rational(limit)
         )
         for v in values
     ]
@@ -69,6 +70,24 @@ def test_non_detect_beyond_the_line_leaves_the_finding_open():
 def test_result_above_range_breaks_the_line_it_reaches():
     window = found(measured("0.11", qualifier=Qualifier.ABOVE))
     assert (counts(window.chronic), counts(window.technical)) == ((1, 1, 1), (0, 1, 1))
+
+
+def test_average_with_non_detects_counts_by_its_bounds():
+    def average(low, high):
+        figure = Figure(
+            low=Rational(low),
+            high=None if high is None else Rational(high),
+            value=None,
+            standing=Standing.QUANTIFIED,
+            count=4,
+            nondetects=2,
+        )
+        return [Measurement(day=DAY, observed=figure, limit=Rational("0.07"))]
+
+    assert counts(found(average("0.071", "0.09")).chronic) == (1, 1, 1)
+    assert counts(found(average("0.07", "0.09")).chronic) == (0, 1, 1)
+    assert counts(found(average("0.05", "0.07")).chronic) == (0, 0, 1)
+    assert counts(found(average("0.07", None)).chronic) == (1, 1, 1)
 
 
 def test_ph_has_no_technical_review_criterion():
