@@ -1,4 +1,4 @@
-"""The README can be followed word by word: each command of its tour runs on the demo and leaves as it says."""
+"""The README can be followed word by word: every command of its tour runs, and leaves as it says."""
 
 from __future__ import annotations
 
