@@ -124,8 +124,8 @@ def _imported_text(imported: Imported) -> str:
 
 
 def _counted(first: int, count: int) -> str:
-    if count <= 1:
-        return f"1 result is recorded, number {first}" if count else "no result is in the files"
+    if count == 1:
+        return f"1 result is recorded, number {first}"
     return f"{count} results are recorded, numbers {first} to {first + count - 1}"
 
 

@@ -9,7 +9,7 @@ from pathlib import Path
 from typing import NamedTuple
 
 from effluent.domain import File
-from effluent.errors import AlreadyRecorded, FileMissing, StorageFailed
+from effluent.errors import AlreadyRecorded, FileMissing, StorageFailed, ValueRefused
 from effluent.intake.explain import Explanation
 from effluent.intake.explain import explain as explain_file
 from effluent.intake.layout import PLAIN, Layout
@@ -96,6 +96,8 @@ def import_files(
         run = _Run(writing, order, layout, progress or _silent)
         run.read(records)
         run.receiving.finish(names, accept=accept)
+        if not run.receiving.count:
+            raise ValueRefused("laboratory file", names, "it holds no results; nothing was recorded")
         return Imported(tuple(run.files), run.receiving.first_number, run.receiving.count, run.skipped)
 
     return ledger.write(job, by=by, action="import results", reason=reason)
