@@ -155,7 +155,13 @@ def issue(ledger: Ledger, code: str, *, by: str, on: date | None = None, accept:
         If a link between wash, container, sample and verdict is missing, each named.
     Questioned
         If a verdict is over or undetermined, or a quantity implausible, and nobody accepted it.
+    NotPrintable
+        If its paper could not be printed.
     """
+    from effluent.services.sheet import check_printable  # what draws pages loads slowly
+
+    with ledger.reading() as reading:
+        check_printable(reading, reading.value("manifest", code), remark=accept)
 
     def job(writing: Writing) -> None:
         manifest = _in_state(writing, code, ManifestState.DRAFT)

@@ -38,7 +38,7 @@ from effluent.store.database import refuse_taken
 from effluent.store.ledger import Ledger
 from effluent.store.reading import Reading, Version
 
-__all__ = ["check_target", "pdf", "sheet"]
+__all__ = ["check_printable", "check_target", "pdf", "sheet"]
 
 _BOUNDS = {
     (Bound.MAXIMUM, BrokenBy.BEYOND): "at most",
@@ -82,6 +82,17 @@ def pdf(ledger: Ledger, code: str, target: str, *, paper: str = "A4", as_of: str
     content = render(worded, paper=paper)
     with appearing(target) as unfinished:
         unfinished.write_bytes(content)
+
+
+def check_printable(reading: Reading, manifest: Manifest, *, remark: str) -> None:
+    """Refuse a manifest whose paper, with a remark on it, cannot be printed.
+
+    Raises
+    ------
+    NotPrintable
+        If a text holds a character that the fonts on board cannot print.
+    """
+    render(replace(sheet(reading, manifest), state_note=remark))
 
 
 def sheet(reading: Reading, manifest: Manifest) -> ManifestSheet:

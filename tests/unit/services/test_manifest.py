@@ -11,6 +11,7 @@ from effluent.domain import ManifestState
 from effluent.errors import (
     ChainBroken,
     FileMissing,
+    NotPrintable,
     Questioned,
     RecordMissing,
     StateRefused,
@@ -141,6 +142,14 @@ def test_verdict_over_the_limit_is_shipped_only_with_a_reason(book: Ledger) -> N
     assert manifests.show(book, code).doubts[0].startswith("container D-1, sample S-0001: cadmium total over")
     manifests.issue(book, code, by="AM", accept="the works takes it")
     assert newest(book)[1].startswith("accepted: the works takes it")
+
+
+def test_manifest_that_cannot_be_printed_is_not_issued(book: Ledger) -> None:
+    ready(book, "D-1", cadmium="0.2")
+    code = manifests.draft(book, manifest(line("D-1")), by="AM")
+    with pytest.raises(NotPrintable):
+        manifests.issue(book, code, by="AM", accept="\u0645\u064a\u0627\u0647")
+    assert manifests.show(book, code).value.state is ManifestState.DRAFT
 
 
 @pytest.mark.parametrize(
