@@ -75,7 +75,7 @@ def is_server(place: str) -> bool:
 
 def shown(place: str) -> str:
     """Return a place fit to be shown: without the password."""
-    return re.sub(r"://([^:/@]*):[^@/]*@", r"://\1:***@", place)
+    return re.sub(r"(password=)[^&]*", r"\1***", re.sub(r"://([^:/@]*):.*@", r"://\1:***@", place))
 
 
 def connect(place: str) -> Engine:
@@ -87,7 +87,7 @@ def connect(place: str) -> Engine:
         if url.drivername != "postgresql+psycopg":
             raise ValueRefused("ledger", shown(place), "use a file or postgresql+psycopg://…")
         return create_engine(url, poolclass=NullPool, isolation_level="SERIALIZABLE")
-    except (ArgumentError, NoSuchModuleError) as error:
+    except (ArgumentError, NoSuchModuleError, ValueError) as error:  # a port that is no number
         raise ValueRefused("ledger", shown(place), "use a file or postgresql+psycopg://…") from error
     except ImportError as error:
         raise ServerMissing(shown(place), "its driver is missing; install effluent[postgresql]") from error
