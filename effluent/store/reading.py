@@ -7,7 +7,21 @@ import functools
 from collections.abc import Iterable, Mapping, Sequence
 from typing import Any, NamedTuple
 
-from sqlalchemy import Connection, FromClause, Select, Table, and_, func, literal_column, not_, or_, select
+from sqlalchemy import (
+    Connection,
+    FromClause,
+    Integer,
+    Select,
+    String,
+    Table,
+    and_,
+    bindparam,
+    func,
+    literal_column,
+    not_,
+    or_,
+    select,
+)
 
 from effluent.domain import Manifest, ManifestLine, Result
 from effluent.errors import RecordMissing
@@ -53,6 +67,23 @@ def _later(table: Table) -> FromClause:
     return table.alias("later")
 
 
+def _standing(table: Table, as_of: Any) -> Select[Any]:
+    """Return the query for the versions that stand as of an entry."""
+    later = _later(table)
+    newer = select(later.c.row).where(
+        later.c.key == table.c.key, later.c.version > table.c.version, later.c.entry <= as_of
+    )
+    return select(table).where(table.c.entry <= as_of, not_(newer.exists()))
+
+
+@functools.cache
+def _one_standing(kind: Noun) -> Select[Any]:
+    """Return the query for one record, its key and the entry left open; it is asked over and over."""
+    table = kind.table
+    standing = _standing(table, bindparam("as_of", type_=Integer))
+    return standing.where(table.c.voided == 0, table.c.key == bindparam("key", type_=String))
+
+
 class Reading:
     """A consistent view of the ledger up to one entry."""
 
@@ -96,10 +127,12 @@ class Reading:
 
     def value(self, noun: str, code: str) -> Any:
         """Return the record as it stands; a voided one is not there."""
-        found = self.values(noun, key=code)
-        if not found:
+        kind = NOUNS[noun]
+        wanted = {"key": key_of(noun, code), "as_of": self.as_of}
+        row = self._connection.execute(_one_standing(kind), wanted).mappings().one_or_none()
+        if row is None:
             raise self._missing(noun, code)
-        return found[0]
+        return self._revive(kind, row)
 
     def values(self, noun: str, **where: object) -> tuple[Any, ...]:
         """Return the records that stand, in the order they were first recorded.
@@ -235,11 +268,7 @@ class Reading:
         )
 
     def _standing(self, kind: Noun) -> Select[Any]:
-        table, later = kind.table, _later(kind.table)
-        newer = select(later.c.row).where(
-            later.c.key == table.c.key, later.c.version > table.c.version, later.c.entry <= self.as_of
-        )
-        return select(table).where(table.c.entry <= self.as_of, not_(newer.exists()))
+        return _standing(kind.table, self.as_of)
 
     def _matches(self, kind: Noun, name: str, wanted: object) -> Any:
         column = kind.table.c[name]
