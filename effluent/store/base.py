@@ -56,17 +56,15 @@ class EntryRow(Base):
 
 
 class Brings:
-    """A row that an entry brought; row numbers of a table run from 1 without a gap."""
+    """A row that an entry brought; row numbers of a table run from 1 without a gap.
+
+    ``entry`` is no foreign key: the entry is written last, so the key would be deferred, and SQLite would
+    look through every row of every table at each commit. The entry's digest holds its rows instead.
+    """
 
     row: Mapped[int] = mapped_column(primary_key=True, autoincrement=False, sort_order=-10)
 
-    @declared_attr
-    def entry(cls) -> Mapped[int]:  # noqa: N805
-        """Return the column that names the entry; it is written last, so the key is deferred."""
-        return mapped_column(
-            ForeignKey("entry.sequence", ondelete="RESTRICT", deferrable=True, initially="DEFERRED"),
-            sort_order=-9,
-        )
+    entry: Mapped[int] = mapped_column(sort_order=-9)
 
 
 class LedgerRow(Brings, Base):

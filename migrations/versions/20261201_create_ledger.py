@@ -112,14 +112,6 @@ def create_tables():
         sa.Column("entry", WHOLE, nullable=False),
         sa.Column("number", TEXT, nullable=False),
         sa.Column("format", WHOLE, nullable=False),
-        sa.ForeignKeyConstraint(
-            ["entry"],
-            ["entry.sequence"],
-            name=op.f("fk_ledger_entry"),
-            ondelete="RESTRICT",
-            initially="DEFERRED",
-            deferrable=True,
-        ),
         sa.PrimaryKeyConstraint("row", name=op.f("pk_ledger")),
         sqlite_strict=True,
     )
@@ -130,14 +122,6 @@ def create_tables():
         sa.Column("key", TEXT, nullable=False),
         sa.Column("noun", TEXT, nullable=False),
         sa.CheckConstraint("key LIKE noun || '/_%'", name=op.f("ck_record_key")),
-        sa.ForeignKeyConstraint(
-            ["entry"],
-            ["entry.sequence"],
-            name=op.f("fk_record_entry"),
-            ondelete="RESTRICT",
-            initially="DEFERRED",
-            deferrable=True,
-        ),
         sa.PrimaryKeyConstraint("row", name=op.f("pk_record")),
         sa.UniqueConstraint("key", name=op.f("uq_record_key")),
         sqlite_strict=True,
@@ -158,14 +142,6 @@ def create_tables():
         sa.Column("ph", TEXT, nullable=True),
         sa.CheckConstraint("version >= 1", name=op.f("ck_cleaner_version")),
         sa.CheckConstraint("voided IN (0, 1)", name=op.f("ck_cleaner_voided")),
-        sa.ForeignKeyConstraint(
-            ["entry"],
-            ["entry.sequence"],
-            name=op.f("fk_cleaner_entry"),
-            ondelete="RESTRICT",
-            initially="DEFERRED",
-            deferrable=True,
-        ),
         sa.ForeignKeyConstraint(["key"], ["record.key"], name=op.f("fk_cleaner_key"), ondelete="RESTRICT"),
         sa.PrimaryKeyConstraint("row", name=op.f("pk_cleaner")),
         sa.UniqueConstraint("key", "version", name=op.f("uq_cleaner_key_version")),
@@ -185,14 +161,6 @@ def create_tables():
         sa.Column("identification", TEXT, nullable=False),
         sa.CheckConstraint("version >= 1", name=op.f("ck_company_version")),
         sa.CheckConstraint("voided IN (0, 1)", name=op.f("ck_company_voided")),
-        sa.ForeignKeyConstraint(
-            ["entry"],
-            ["entry.sequence"],
-            name=op.f("fk_company_entry"),
-            ondelete="RESTRICT",
-            initially="DEFERRED",
-            deferrable=True,
-        ),
         sa.ForeignKeyConstraint(["key"], ["record.key"], name=op.f("fk_company_key"), ondelete="RESTRICT"),
         sa.PrimaryKeyConstraint("row", name=op.f("pk_company")),
         sa.UniqueConstraint("key", "version", name=op.f("uq_company_key_version")),
@@ -214,14 +182,6 @@ def create_tables():
         sa.CheckConstraint("\"site\" LIKE 'site/_%'", name=op.f("ck_container_site")),
         sa.CheckConstraint("version >= 1", name=op.f("ck_container_version")),
         sa.CheckConstraint("voided IN (0, 1)", name=op.f("ck_container_voided")),
-        sa.ForeignKeyConstraint(
-            ["entry"],
-            ["entry.sequence"],
-            name=op.f("fk_container_entry"),
-            ondelete="RESTRICT",
-            initially="DEFERRED",
-            deferrable=True,
-        ),
         sa.ForeignKeyConstraint(["key"], ["record.key"], name=op.f("fk_container_key"), ondelete="RESTRICT"),
         sa.ForeignKeyConstraint(
             ["site"], ["record.key"], name=op.f("fk_container_site"), ondelete="RESTRICT"
@@ -246,14 +206,6 @@ def create_tables():
         sa.CheckConstraint("\"site\" LIKE 'site/_%'", name=op.f("ck_engine_site")),
         sa.CheckConstraint("version >= 1", name=op.f("ck_engine_version")),
         sa.CheckConstraint("voided IN (0, 1)", name=op.f("ck_engine_voided")),
-        sa.ForeignKeyConstraint(
-            ["entry"],
-            ["entry.sequence"],
-            name=op.f("fk_engine_entry"),
-            ondelete="RESTRICT",
-            initially="DEFERRED",
-            deferrable=True,
-        ),
         sa.ForeignKeyConstraint(["key"], ["record.key"], name=op.f("fk_engine_key"), ondelete="RESTRICT"),
         sa.ForeignKeyConstraint(["site"], ["record.key"], name=op.f("fk_engine_site"), ondelete="RESTRICT"),
         sa.PrimaryKeyConstraint("row", name=op.f("pk_engine")),
@@ -273,14 +225,6 @@ def create_tables():
         sa.Column("layout", TEXT, nullable=False),
         sa.CheckConstraint("version >= 1", name=op.f("ck_file_version")),
         sa.CheckConstraint("voided IN (0, 1)", name=op.f("ck_file_voided")),
-        sa.ForeignKeyConstraint(
-            ["entry"],
-            ["entry.sequence"],
-            name=op.f("fk_file_entry"),
-            ondelete="RESTRICT",
-            initially="DEFERRED",
-            deferrable=True,
-        ),
         sa.ForeignKeyConstraint(["key"], ["record.key"], name=op.f("fk_file_key"), ondelete="RESTRICT"),
         sa.PrimaryKeyConstraint("row", name=op.f("pk_file")),
         sa.UniqueConstraint("key", "version", name=op.f("uq_file_key_version")),
@@ -320,14 +264,6 @@ def create_tables():
         sa.ForeignKeyConstraint(
             ["entered_by"], ["record.key"], name=op.f("fk_limit_entered_by"), ondelete="RESTRICT"
         ),
-        sa.ForeignKeyConstraint(
-            ["entry"],
-            ["entry.sequence"],
-            name=op.f("fk_limit_entry"),
-            ondelete="RESTRICT",
-            initially="DEFERRED",
-            deferrable=True,
-        ),
         sa.ForeignKeyConstraint(["key"], ["record.key"], name=op.f("fk_limit_key"), ondelete="RESTRICT"),
         sa.ForeignKeyConstraint(["point"], ["record.key"], name=op.f("fk_limit_point"), ondelete="RESTRICT"),
         sa.ForeignKeyConstraint(
@@ -362,14 +298,6 @@ def create_tables():
         sa.CheckConstraint("version >= 1", name=op.f("ck_manifest_version")),
         sa.CheckConstraint("voided IN (0, 1)", name=op.f("ck_manifest_voided")),
         sa.ForeignKeyConstraint(
-            ["entry"],
-            ["entry.sequence"],
-            name=op.f("fk_manifest_entry"),
-            ondelete="RESTRICT",
-            initially="DEFERRED",
-            deferrable=True,
-        ),
-        sa.ForeignKeyConstraint(
             ["facility"], ["record.key"], name=op.f("fk_manifest_facility"), ondelete="RESTRICT"
         ),
         sa.ForeignKeyConstraint(["key"], ["record.key"], name=op.f("fk_manifest_key"), ondelete="RESTRICT"),
@@ -401,14 +329,6 @@ def create_tables():
         sa.CheckConstraint("\"wash\" LIKE 'wash/_%'", name=op.f("ck_movement_wash")),
         sa.CheckConstraint("version >= 1", name=op.f("ck_movement_version")),
         sa.CheckConstraint("voided IN (0, 1)", name=op.f("ck_movement_voided")),
-        sa.ForeignKeyConstraint(
-            ["entry"],
-            ["entry.sequence"],
-            name=op.f("fk_movement_entry"),
-            ondelete="RESTRICT",
-            initially="DEFERRED",
-            deferrable=True,
-        ),
         sa.ForeignKeyConstraint(["key"], ["record.key"], name=op.f("fk_movement_key"), ondelete="RESTRICT"),
         sa.ForeignKeyConstraint(
             ["moved_by"], ["record.key"], name=op.f("fk_movement_moved_by"), ondelete="RESTRICT"
@@ -438,14 +358,6 @@ def create_tables():
         sa.Column("role", TEXT, nullable=False),
         sa.CheckConstraint("version >= 1", name=op.f("ck_person_version")),
         sa.CheckConstraint("voided IN (0, 1)", name=op.f("ck_person_voided")),
-        sa.ForeignKeyConstraint(
-            ["entry"],
-            ["entry.sequence"],
-            name=op.f("fk_person_entry"),
-            ondelete="RESTRICT",
-            initially="DEFERRED",
-            deferrable=True,
-        ),
         sa.ForeignKeyConstraint(["key"], ["record.key"], name=op.f("fk_person_key"), ondelete="RESTRICT"),
         sa.PrimaryKeyConstraint("row", name=op.f("pk_person")),
         sa.UniqueConstraint("key", "version", name=op.f("uq_person_key_version")),
@@ -466,14 +378,6 @@ def create_tables():
         sa.CheckConstraint("\"site\" LIKE 'site/_%'", name=op.f("ck_point_site")),
         sa.CheckConstraint("version >= 1", name=op.f("ck_point_version")),
         sa.CheckConstraint("voided IN (0, 1)", name=op.f("ck_point_voided")),
-        sa.ForeignKeyConstraint(
-            ["entry"],
-            ["entry.sequence"],
-            name=op.f("fk_point_entry"),
-            ondelete="RESTRICT",
-            initially="DEFERRED",
-            deferrable=True,
-        ),
         sa.ForeignKeyConstraint(["key"], ["record.key"], name=op.f("fk_point_key"), ondelete="RESTRICT"),
         sa.ForeignKeyConstraint(["site"], ["record.key"], name=op.f("fk_point_site"), ondelete="RESTRICT"),
         sa.PrimaryKeyConstraint("row", name=op.f("pk_point")),
@@ -511,14 +415,6 @@ def create_tables():
         sa.CheckConstraint("qualifier IN ('=', '<', '>')", name=op.f("ck_result_qualifier")),
         sa.CheckConstraint("\"file\" LIKE 'file/_%'", name=op.f("ck_result_file")),
         sa.CheckConstraint("\"sample\" LIKE 'sample/_%'", name=op.f("ck_result_sample")),
-        sa.ForeignKeyConstraint(
-            ["entry"],
-            ["entry.sequence"],
-            name=op.f("fk_result_entry"),
-            ondelete="RESTRICT",
-            initially="DEFERRED",
-            deferrable=True,
-        ),
         sa.ForeignKeyConstraint(["file"], ["record.key"], name=op.f("fk_result_file"), ondelete="RESTRICT"),
         sa.ForeignKeyConstraint(
             ["sample"], ["record.key"], name=op.f("fk_result_sample"), ondelete="RESTRICT"
@@ -569,14 +465,6 @@ def create_tables():
         sa.ForeignKeyConstraint(
             ["container"], ["record.key"], name=op.f("fk_sample_container"), ondelete="RESTRICT"
         ),
-        sa.ForeignKeyConstraint(
-            ["entry"],
-            ["entry.sequence"],
-            name=op.f("fk_sample_entry"),
-            ondelete="RESTRICT",
-            initially="DEFERRED",
-            deferrable=True,
-        ),
         sa.ForeignKeyConstraint(["key"], ["record.key"], name=op.f("fk_sample_key"), ondelete="RESTRICT"),
         sa.ForeignKeyConstraint(
             ["laboratory"], ["record.key"], name=op.f("fk_sample_laboratory"), ondelete="RESTRICT"
@@ -612,14 +500,6 @@ def create_tables():
         sa.Column("shipping_paper_country", TEXT, nullable=False),
         sa.CheckConstraint("version >= 1", name=op.f("ck_site_version")),
         sa.CheckConstraint("voided IN (0, 1)", name=op.f("ck_site_voided")),
-        sa.ForeignKeyConstraint(
-            ["entry"],
-            ["entry.sequence"],
-            name=op.f("fk_site_entry"),
-            ondelete="RESTRICT",
-            initially="DEFERRED",
-            deferrable=True,
-        ),
         sa.ForeignKeyConstraint(["key"], ["record.key"], name=op.f("fk_site_key"), ondelete="RESTRICT"),
         sa.PrimaryKeyConstraint("row", name=op.f("pk_site")),
         sa.UniqueConstraint("key", "version", name=op.f("uq_site_key_version")),
@@ -671,14 +551,6 @@ def create_tables():
             ["cleaner"], ["record.key"], name=op.f("fk_wash_cleaner"), ondelete="RESTRICT"
         ),
         sa.ForeignKeyConstraint(["engine"], ["record.key"], name=op.f("fk_wash_engine"), ondelete="RESTRICT"),
-        sa.ForeignKeyConstraint(
-            ["entry"],
-            ["entry.sequence"],
-            name=op.f("fk_wash_entry"),
-            ondelete="RESTRICT",
-            initially="DEFERRED",
-            deferrable=True,
-        ),
         sa.ForeignKeyConstraint(["key"], ["record.key"], name=op.f("fk_wash_key"), ondelete="RESTRICT"),
         sa.ForeignKeyConstraint(
             ["performed_by"], ["record.key"], name=op.f("fk_wash_performed_by"), ondelete="RESTRICT"
@@ -701,14 +573,6 @@ def create_tables():
         sa.CheckConstraint("\"company\" LIKE 'company/_%'", name=op.f("ck_manifest_carrier_company")),
         sa.ForeignKeyConstraint(
             ["company"], ["record.key"], name=op.f("fk_manifest_carrier_company"), ondelete="RESTRICT"
-        ),
-        sa.ForeignKeyConstraint(
-            ["entry"],
-            ["entry.sequence"],
-            name=op.f("fk_manifest_carrier_entry"),
-            ondelete="RESTRICT",
-            initially="DEFERRED",
-            deferrable=True,
         ),
         sa.ForeignKeyConstraint(
             ["manifest", "version"],
@@ -738,14 +602,6 @@ def create_tables():
             ["container"], ["record.key"], name=op.f("fk_manifest_line_container"), ondelete="RESTRICT"
         ),
         sa.ForeignKeyConstraint(
-            ["entry"],
-            ["entry.sequence"],
-            name=op.f("fk_manifest_line_entry"),
-            ondelete="RESTRICT",
-            initially="DEFERRED",
-            deferrable=True,
-        ),
-        sa.ForeignKeyConstraint(
             ["manifest", "version"],
             ["manifest.key", "manifest.version"],
             name=op.f("fk_manifest_line_manifest_version"),
@@ -763,14 +619,6 @@ def create_tables():
         sa.Column("row", WHOLE, autoincrement=False, nullable=False),
         sa.Column("entry", WHOLE, nullable=False),
         sa.Column("result", WHOLE, nullable=False),
-        sa.ForeignKeyConstraint(
-            ["entry"],
-            ["entry.sequence"],
-            name=op.f("fk_result_void_entry"),
-            ondelete="RESTRICT",
-            initially="DEFERRED",
-            deferrable=True,
-        ),
         sa.ForeignKeyConstraint(
             ["result"], ["result.row"], name=op.f("fk_result_void_result"), ondelete="RESTRICT"
         ),
