@@ -82,6 +82,11 @@ def test_rolling_window_holds_thirty_calendar_days():
 
 
 @pytest.mark.parametrize("window", [monitoring_days, rolling_days])
+def test_window_of_one_day_is_the_day(window):
+    assert values(window(days("1", "2"), rule=RULE, length=1)) == [1, 2]
+
+
+@pytest.mark.parametrize("window", [monitoring_days, rolling_days])
 def test_window_of_no_day_is_refused(window):
     with pytest.raises(ValueRefused, match="one day or more"):
         window(days("1"), rule=RULE, length=0)

@@ -23,6 +23,10 @@ def test_aliquots_are_weighted_with_their_flow():
     assert of(GRABS, Several.FLOW, volumes=[Rational(6), Rational(3), Rational(1)]).value == Rational("0.2")
 
 
+def test_aliquot_of_no_flow_counts_nothing():
+    assert of(GRABS, Several.FLOW, volumes=[Rational(0), Rational(1), Rational(0)]).value == Rational("0.3")
+
+
 @pytest.mark.parametrize(
     ("volumes", "text"),
     [
