@@ -16,7 +16,7 @@ from effluent.cli.value import line
 __all__ = ["demo"]
 
 
-@click.command("demo", help=f"{TABLE['demo'][1]} DIR must be new or empty.")
+@click.command("demo", help=f"{TABLE['demo'][1]}\n\nDIR must be new or empty.")
 @click.argument("folder", metavar="DIR", type=line)
 @click.option(
     "--seed",
