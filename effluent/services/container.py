@@ -104,15 +104,14 @@ def move(ledger: Ledger, movement: Movement, *, by: str, reason: str = "") -> st
         If it contradicts itself, would leave a container below empty or above its working
         capacity at any time, or touches a container that was shipped.
     """
+    check(movement)
     _check_ends(movement)
 
     def job(writing: Writing) -> str:
         source: Container = writing.value("container", movement.source or "")
         site: Site = writing.value("site", source.site)
         _check_same_site(writing, source, movement)
-        placed = replace(movement, moved_at=_moment(movement, site, ledger))
-        check(placed)
-        code = writing.record(placed)
+        code = writing.record(replace(movement, moved_at=_moment(movement, site, ledger)))
         check_levels(writing, {movement.source, movement.target})
         return code
 

@@ -196,11 +196,14 @@ def _fills(wash: Wash, fills: Fills) -> tuple[Movement, ...]:
             "container", ", ".join(fills), "nothing was caught that could go into it; give --caught"
         )
     volumes = _volumes(wash, fills)
+    made = tuple(_fill(wash, container, volume) for container, volume in volumes.items())
+    for fill in made:
+        check(fill)
     total = sum((canonical(volume, "volume") for volume in volumes.values()), Fraction(0))
     if total != caught:
         listed = ", ".join(f"{container} {volume}" for container, volume in volumes.items())
         raise ValueRefused("containers", listed, f"together they must hold the {wash.caught} that was caught")
-    return tuple(_fill(wash, container, volume) for container, volume in volumes.items())
+    return made
 
 
 def _volumes(wash: Wash, fills: Fills) -> dict[str, Quantity]:
@@ -226,7 +229,6 @@ def _fill(wash: Wash, container: str, volume: Quantity) -> Movement:
 
 
 def _record_fill(writing: Writing, fill: Movement) -> Movement:
-    check(fill)
     _check_same_site(writing, fill)
     return replace(fill, code=writing.record(fill))
 
@@ -268,7 +270,6 @@ def _replace_fills(
 def _amend_fill(writing: Writing, fill: Movement, old: Movement) -> Movement:
     amended = replace(fill, code=old.code)
     if amended != old:
-        check(amended)
         writing.amend(amended)
     return amended
 
