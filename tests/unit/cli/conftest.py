@@ -1,16 +1,20 @@
-"""A ledger that notes what it was asked, so that these tests see the command line alone."""
+"""A ledger that notes what it was asked, so that tests see the command line alone; and a real one."""
 
 from __future__ import annotations
 
 import sys
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator
 from contextlib import contextmanager
+from pathlib import Path
 from types import ModuleType, SimpleNamespace
 from typing import Any
 
 import pytest
 
 import effluent.services
+from effluent.__main__ import run
+from tests.washing import add_station
+from tests.world import world
 
 
 class Noted:
@@ -49,3 +53,21 @@ def noted(monkeypatch: pytest.MonkeyPatch) -> Noted:
     monkeypatch.setenv("EFFLUENT_LEDGER", "a.ledger")
     monkeypatch.setenv("EFFLUENT_BY", "AM")
     return noted
+
+
+@pytest.fixture
+def typed(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch, capsys: pytest.CaptureFixture[str]
+) -> Callable[..., tuple[int, list[str]]]:
+    """Type a command on the invented ledger; get the exit status and the lines of answer or complaint."""
+    monkeypatch.setenv("EFFLUENT_LEDGER", str(tmp_path / "ledger"))
+    monkeypatch.setenv("EFFLUENT_BY", "AM")
+    with world(str(tmp_path / "ledger")) as book:
+        add_station(book)
+
+    def type_in(*arguments: str) -> tuple[int, list[str]]:
+        status = run(arguments)
+        answer = capsys.readouterr()
+        return status, (answer.out or answer.err).splitlines()
+
+    return type_in
