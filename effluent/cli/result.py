@@ -12,7 +12,7 @@ import click
 
 from effluent.cli import option, show
 from effluent.cli.group import TABLE, Group
-from effluent.cli.value import count, day, line, line_or_nothing
+from effluent.cli.value import count, day, file, line, line_or_nothing
 from effluent.intake.layout import FIELDS
 
 if TYPE_CHECKING:
@@ -25,7 +25,6 @@ __all__ = ["progress_bar", "result", "wanted_from", "wanted_options"]
 
 _Body = TypeVar("_Body", bound=Callable[..., Any])
 _NEEDED = ("sample", "analyte", "value")
-_FILE = click.Path(path_type=Path)
 
 result = Group("result", help=TABLE["result"][1])
 
@@ -52,9 +51,9 @@ def wanted_from(given: dict[str, Any]) -> Wanted:
 
 
 @result.command("import")
-@click.argument("files", metavar="FILE...", nargs=-1, required=True, type=_FILE)
+@click.argument("files", metavar="FILE...", nargs=-1, required=True, type=file)
 @click.option(
-    "--layout", type=_FILE, metavar="MAPPING", help="Mapping file (TOML) of the laboratory's columns."
+    "--layout", type=file, metavar="MAPPING", help="Mapping file (TOML) of the laboratory's columns."
 )
 @click.option("--time-zone", type=line, metavar="ZONE", help="Zone of local times, as in Europe/Lisbon.")
 @click.option("--explain", is_flag=True, help="Show how each column is understood; record nothing.")
@@ -170,8 +169,8 @@ def enter_command(*, ledger: str, by: str, reason: str | None, accept: str | Non
 @result.command("list")
 @wanted_options
 @click.option("--analyte", type=line, metavar="NAME", help="Only this analyte: name, symbol or CAS number.")
-@click.option("--csv", "csv_path", type=_FILE, metavar="FILE", help="Write them to a new CSV file.")
-@click.option("--xlsx", "xlsx_path", type=_FILE, metavar="FILE", help="Write them to a new XLSX file.")
+@click.option("--csv", "csv_path", type=file, metavar="FILE", help="Write them to a new CSV file.")
+@click.option("--xlsx", "xlsx_path", type=file, metavar="FILE", help="Write them to a new XLSX file.")
 @option.reads
 def list_command(*, analyte: str | None, csv_path: Path | None, xlsx_path: Path | None, **given: Any) -> None:
     """List the results that stand, with those analysed outside their holding time marked."""

@@ -6,6 +6,7 @@ import re
 from collections.abc import Callable
 from datetime import date, datetime
 from enum import StrEnum
+from pathlib import Path
 from typing import NoReturn, TypeVar
 
 import click
@@ -14,7 +15,7 @@ from effluent.cli.text import clip, has_hidden, printable
 from effluent.domain import Quantity
 from effluent.errors import ValueRefused
 
-__all__ = ["count", "day", "instant", "line", "line_or_nothing", "quantity", "short", "word"]
+__all__ = ["count", "day", "file", "instant", "line", "line_or_nothing", "quantity", "short", "word"]
 
 _LONGEST_TEXT, _LONGEST_VALUE = 2000, 100
 _DAY = r"[0-9]{4}-[0-9]{2}-[0-9]{2}"
@@ -56,6 +57,17 @@ def line(written: str) -> str:
         If it is empty, too long or holds control characters.
     """
     return line_or_nothing(written) or _refuse("it is empty; write some text")
+
+
+def file(written: str) -> Path:
+    """Return the path of a file; whether it is there is seen when it is read or written.
+
+    Raises
+    ------
+    click.BadParameter
+        If it is empty, or longer or other than a name that can be recorded.
+    """
+    return Path(line(written))
 
 
 def short(written: str) -> str:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import os
 import tomllib
 from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass, field
@@ -76,11 +77,13 @@ class Layout:
         ValueRefused
             If it is not TOML, or a key or value in it is not one of those documented.
         """
-        if not path.is_file():
+        if not os.path.isfile(path):
             raise FileMissing(path, "name the mapping file of this laboratory")
         try:
             document = tomllib.loads(path.read_text(encoding="utf-8-sig"))
-        except (tomllib.TOMLDecodeError, UnicodeDecodeError) as error:
+        except OSError as error:
+            raise ValueRefused("mapping file", path.name, f"it cannot be read: {error.strerror}") from error
+        except (ValueError, RecursionError) as error:  # also numbers without end, and nesting without end
             raise ValueRefused("mapping file", path.name, f"it is not TOML: {error}") from error
         return cls(**{key: _reader(key)(key, value) for key, value in document.items()})
 

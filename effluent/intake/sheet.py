@@ -120,9 +120,9 @@ def _plain(cell: Cell) -> str | int | float:
 
 def _write(path: Path, fill: Callable[[Path], None]) -> None:
     """Fill a temporary file beside the wanted one, then give it its name unless that is taken."""
-    if path.exists():
+    if os.path.lexists(path):
         raise WouldOverwrite(path)
-    if not path.parent.is_dir():
+    if not os.path.isdir(path.parent):
         raise FileMissing(path.parent, "make the folder first")
     try:
         with tempfile.TemporaryDirectory(dir=path.parent, prefix=".effluent-") as folder:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import os
 from collections import Counter
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
@@ -127,7 +128,7 @@ def open_table(
     ValueRefused
         If it is not a table that can be read safely, or headings are missing or repeated.
     """
-    if not path.is_file():
+    if not os.path.isfile(path):
         raise FileMissing(path, "check the name and the folder")
     if path.suffix.lower() in _SUFFIXES_REFUSED:
         raise refused(path, "old, binary and macro workbooks are never opened; save it as .xlsx or as CSV")

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import hashlib
+import os
 from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass, field
 from pathlib import Path
@@ -190,7 +191,7 @@ def _zone(reading: Reading, path: Path, layout: Layout, given: str) -> str:
 
 
 def _record(path: Path, layout_digest: str) -> File:
-    if not path.is_file():
+    if not os.path.isfile(path):
         raise FileMissing(path, "name the laboratory's file")
     return File(name=path.name, sha256=_digest(path), size=path.stat().st_size, layout=layout_digest)
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import hashlib
+import os
 from collections.abc import Mapping, Sequence
 from dataclasses import replace
 from datetime import date, datetime
@@ -311,6 +312,8 @@ def _after_issue(reading: Reading, manifest: Manifest, on: date, now: datetime) 
 
 
 def _sha256(path: Path) -> str:
+    if os.path.exists(path) and not os.path.isfile(path):  # a pipe would keep us waiting
+        raise FileMissing(path, "it is no file; name the scan of the signed copy")
     try:
         with path.open("rb") as scan:
             return hashlib.file_digest(scan, "sha256").hexdigest()

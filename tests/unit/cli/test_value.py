@@ -2,6 +2,7 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from datetime import UTC, date, datetime, timedelta, timezone
+from pathlib import Path
 
 import click
 import pytest
@@ -32,6 +33,12 @@ def test_line_is_stripped_and_keeps_wide_characters() -> None:
 
 def test_line_of_the_longest_length_is_taken() -> None:
     assert value.line("x" * 2000) == "x" * 2000
+
+
+def test_file_is_a_path_whose_name_can_be_recorded() -> None:
+    assert value.file(" lab 1/été.csv ") == Path("lab 1/été.csv")
+    with pytest.raises(click.BadParameter, match="unreadable"):
+        value.file("lab\udce9.csv")
 
 
 def test_line_or_nothing_takes_nothing() -> None:

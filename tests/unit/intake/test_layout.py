@@ -70,6 +70,8 @@ def test_wide_columns_say_analyte_and_unit(read):
         ("skip_rows = -1", "0 to 1000"),
         ("skip_rows = true", "0 to 1000"),
         ("not toml", "it is not TOML"),
+        pytest.param("skip_rows = " + "9" * 5_000, "it is not TOML", id="long number"),
+        pytest.param("columns = " + "[" * 100_000, "it is not TOML", id="deep nesting"),
         ("", "each of sample, analyte, value and unit needs a line"),
         ("[columns]\nsample = 'S'\n[wide]\nCd = {analyte = 'cadmium'}", "'unit' is not accepted"),
         (COLUMNS + "[wide]\nUnit = {analyte = 'cadmium', unit = 'mg/L'}", "keep one"),
@@ -87,8 +89,9 @@ def test_file_that_is_not_text_is_refused(tmp_path):
 
 
 def test_missing_mapping_file_is_named(tmp_path):
-    with pytest.raises(FileMissing, match="mapping file of this laboratory"):
-        Layout.read(tmp_path / "map.toml")
+    for name in ("map.toml", "x" * 300):
+        with pytest.raises(FileMissing, match="mapping file of this laboratory"):
+            Layout.read(tmp_path / name)
 
 
 def test_plain_layout_takes_the_headings_that_are_there():

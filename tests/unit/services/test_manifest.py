@@ -1,6 +1,7 @@
 from __future__ import annotations
 
 import hashlib
+import os
 from collections.abc import Callable, Iterator
 from datetime import date, timedelta
 from pathlib import Path
@@ -212,7 +213,8 @@ def test_return_that_does_not_hold_is_refused(book: Ledger, tmp_path: Path) -> N
     assert "lies in the future" in refusal(TODAY + timedelta(days=1))
     assert "write the name" in refusal(name=" ")
     assert "name the scan" in refusal(scan=tmp_path / "none.pdf")
-    assert "cannot be read" in refusal(scan=tmp_path)
+    os.mkfifo(tmp_path / "pipe")
+    assert "it is no file" in refusal(scan=tmp_path / "pipe")
 
 
 def test_only_what_is_out_can_come_back(book: Ledger) -> None:
