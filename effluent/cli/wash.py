@@ -85,11 +85,13 @@ def amend(
 ) -> None:
     """Correct a wash; the earlier version stays readable, and its fills follow. CODE is its number."""
     changed = changes(Wash, given) if not into or any(given.values()) else {}
+    if into:
+        changed["into"] = into
     from effluent.services import wash as washes
     from effluent.wiring import open_ledger
 
     with open_ledger(ledger) as book:
-        done = washes.amend(book, code, changed, into or None, by=by, reason=reason, accept=accept or "")
+        done = washes.amend(book, code, changed, by=by, reason=reason, accept=accept or "")
     _say(done, "is amended")
 
 

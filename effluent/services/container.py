@@ -28,6 +28,7 @@ __all__ = [
     "check_levels",
     "contents",
     "contents_of",
+    "flows_of",
     "in_time",
     "move",
     "movements_of",
@@ -88,11 +89,14 @@ def amend(ledger: Ledger, code: str, changes: Mapping[str, object], *, by: str, 
     ------
     VolumeRefused
     """
+    need_reason(reason, "amend")
 
-    def still_fits(writing: Writing) -> None:
+    def job(writing: Writing) -> str:
+        register.change(writing, "container", code, changes)
         _check_fit(writing, [code])
+        return code
 
-    return register.amend(ledger, "container", code, changes, by=by, reason=reason, then=still_fits)
+    return ledger.write(job, by=by, action="amend container", reason=reason)
 
 
 def move(ledger: Ledger, movement: Movement, *, by: str, reason: str = "") -> str:

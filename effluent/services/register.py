@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
+from collections.abc import Mapping
 from dataclasses import replace
 from fractions import Fraction
 from typing import Any, NamedTuple
@@ -19,7 +19,18 @@ from effluent.store.noun import noun_of
 from effluent.store.reading import Reading, Version
 from effluent.store.writing import Writing
 
-__all__ = ["Shown", "add", "amend", "check", "check_quantities", "listing", "need_reason", "show", "void"]
+__all__ = [
+    "Shown",
+    "add",
+    "amend",
+    "change",
+    "check",
+    "check_quantities",
+    "listing",
+    "need_reason",
+    "show",
+    "void",
+]
 
 
 _LARGEST = 10**12
@@ -48,9 +59,8 @@ def amend(
     *,
     by: str,
     reason: str,
-    then: Callable[[Writing], None] | None = None,
 ) -> str:
-    """Record a new version of something; the old one stays readable. `then` looks at what it leads to.
+    """Record a new version of something; the old one stays readable.
 
     Raises
     ------
@@ -60,17 +70,25 @@ def amend(
     need_reason(reason, "amend")
 
     def job(writing: Writing) -> str:
-        old = writing.value(noun, code)
-        new = replace(old, **changes)
-        if new == old:
-            raise ValueRefused(noun, code, "nothing would change; name what to change")
-        check(new)
-        writing.amend(new)
-        if then is not None:
-            then(writing)
-        return code
+        return change(writing, noun, code, changes)
 
     return ledger.write(job, by=by, action=f"amend {noun}", reason=reason)
+
+
+def change(writing: Writing, noun: str, code: str, changes: Mapping[str, object]) -> str:
+    """Add a new version of something to an entry in the making.
+
+    Raises
+    ------
+    ValueRefused
+        If nothing changes.
+    """
+    old = writing.value(noun, code)
+    new = replace(old, **changes)
+    if new == old:
+        raise ValueRefused(noun, code, "nothing would change; name what to change")
+    check(new)
+    return writing.amend(new)
 
 
 def void(ledger: Ledger, noun: str, code: str, *, by: str, reason: str) -> None:

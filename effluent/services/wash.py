@@ -6,6 +6,7 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 from datetime import date
 from fractions import Fraction
+from typing import Any
 
 from effluent.calc.balance import Answer, Balance, balance, summary
 from effluent.calc.units import canonical
@@ -88,8 +89,7 @@ def record(
 def amend(
     ledger: Ledger,
     code: str,
-    changes: Mapping[str, object],
-    fills: Fills | None = None,
+    changes: Mapping[str, Any],
     *,
     by: str,
     reason: str,
@@ -97,13 +97,16 @@ def amend(
 ) -> Recorded:
     """Record a new version of a wash; its fills follow. The old version stays readable.
 
-    Without `fills`, a wash that filled one container fills it with what is now caught.
+    `changes` may hold ``into``, the fills as for `record`. Without it, a wash that filled one container
+    fills it with what is now caught.
     """
     need_reason(reason, "amend")
+    fields = {name: value for name, value in changes.items() if name != "into"}
+    fills: Fills | None = changes.get("into")
 
     def job(writing: Writing) -> Recorded:
         old: Wash = writing.value("wash", code)
-        placed = _checked(writing, replace(old, **changes), ledger)  # type: ignore[arg-type]
+        placed = _checked(writing, replace(old, **fields), ledger)
         answer(writing, questions(writing, placed), accept=accept)
         before = writing.values("movement", wash=code, kind=MovementKind.FILL)
         wanted = _fills(placed, _fills_after(before, placed) if fills is None else fills)

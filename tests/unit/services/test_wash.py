@@ -118,25 +118,25 @@ def test_amendment_can_move_the_water_to_other_containers(ledger_place: str) -> 
     with world(ledger_place) as book:
         add_station(book)
         record(book, desalination(**CAUGHT), {"D-1": None}, by="AM")
-        amend(book, "W-0001", {}, {"D-2": q("40 L"), "D-3": q("8 L")}, by="AM", reason="other drums")
+        amend(book, "W-0001", {"into": {"D-2": q("40 L"), "D-3": q("8 L")}}, by="AM", reason="other drums")
         assert [held(book, drum) for drum in ("D-1", "D-2", "D-3")] == [{}, {"W-0001": "40"}, {"W-0001": "8"}]
 
 
 @pytest.mark.parametrize(
-    ("changes", "fills", "text"),
+    ("changes", "text"),
     [
-        ({}, None, "nothing would change"),
-        ({"rinse_water": q("60 L")}, {"D-1": q("48 ± 2 L")}, "nothing would change"),
-        ({"site": "CHI"}, None, "it stands at LIS, the wash was at CHI"),
-        ({"performed_at": NOW + timedelta(days=1)}, None, "in the future"),
+        ({}, "nothing would change"),
+        ({"rinse_water": q("60 L"), "into": {"D-1": q("48 ± 2 L")}}, "nothing would change"),
+        ({"site": "CHI"}, "it stands at LIS, the wash was at CHI"),
+        ({"performed_at": NOW + timedelta(days=1)}, "in the future"),
     ],
 )
-def test_amendment_that_cannot_be_is_refused(tmp_path: Any, changes: Any, fills: Any, text: str) -> None:
+def test_amendment_that_cannot_be_is_refused(tmp_path: Any, changes: Any, text: str) -> None:
     with world(str(tmp_path / "ledger")) as book:
         add_station(book)
         record(book, desalination(**CAUGHT), {"D-1": None}, by="AM")
         with pytest.raises(ValueRefused, match=text):
-            amend(book, "W-0001", changes, fills, by="AM", reason="x")
+            amend(book, "W-0001", changes, by="AM", reason="x")
         assert held(book, "D-1") == {"W-0001": "48"}
 
 
