@@ -41,7 +41,7 @@ def _described(command: click.Command, path: str) -> Iterator[str]:
         return
     pieces = " ".join(command.collect_usage_pieces(context))
     yield f"{'##' if path.count(' ') == 1 else '###'} {path}\n\n`{path} {pieces}`\n\n{_help(command)}\n"
-    options = [p for p in command.get_params(context) if isinstance(p, click.Option) and p.opts != ["--help"]]
+    options = [p for p in command.get_params(context) if isinstance(p, click.Option) and "--help" not in p.opts]
     if options:
         yield "| option | meaning |\n|---|---|"
         yield from (_row(option) for option in options)
