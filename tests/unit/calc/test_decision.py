@@ -44,6 +44,18 @@ def test_result_on_the_acceptance_limit_is_decided_exactly():
     assert decided("0.13", ACCEPT, bound=Bound.MINIMUM).accepted
 
 
+def test_minimum_is_the_mirror_image():
+    assert not decided("0.1299", ACCEPT, bound=Bound.MINIMUM).accepted
+    assert decided("0.0901", REJECT, bound=Bound.MINIMUM).accepted
+
+
+def test_guard_band_is_a_multiple_of_the_uncertainty():
+    guard = Guard(rule=DecisionRule.GUARDED_ACCEPTANCE, multiple=Rational("1.5"))
+    assert acceptance_limit(Rational(1), Rational("0.2"), guard) == Rational("0.7")
+    assert acceptance_limit(Rational(1), Rational(0), guard) == 1
+    assert acceptance_limit(Rational(1), Rational(1), Guard(multiple=Rational(0))) == 1
+
+
 def test_risk_stands_with_the_decision():
     accepted = decided("0.09", ACCEPT)
     assert accepted.false_accept_risk == pytest.approx(0.02275, abs=1e-5)

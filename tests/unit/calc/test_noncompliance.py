@@ -67,6 +67,21 @@ def test_non_detect_beyond_the_line_leaves_the_finding_open():
     assert found(measured("0.11", qualifier=Qualifier.BELOW)).finding == Finding.NOT_MET
 
 
+def test_some_sure_hits_and_enough_possible_ones_leave_it_open():
+    assert Share(count=4, surely=1, possibly=4, percent=66).finding == Finding.OPEN
+
+
+@pytest.mark.parametrize("day", SPAN)
+def test_first_and_last_day_of_a_window_count(day):
+    one = Measurement(day=day, observed=Observation(value=Rational(2)), limit=Rational(1))
+    assert counts(found([one]).chronic) == (1, 1, 1)
+
+
+def test_window_of_one_day_is_a_window():
+    (window,) = significant_noncompliance(measured("0.12"), [(DAY, DAY)])
+    assert window.chronic.count == 1
+
+
 def test_result_above_range_breaks_the_line_it_reaches():
     window = found(measured("0.11", qualifier=Qualifier.ABOVE))
     assert (counts(window.chronic), counts(window.technical)) == ((1, 1, 1), (0, 1, 1))
@@ -102,6 +117,12 @@ def test_operator_and_factor_are_data():
     assert beyond.finding == Finding.NOT_MET
 
 
+@pytest.mark.parametrize(("percent", "finding"), [(1, Finding.MET), (100, Finding.NOT_MET)])
+def test_percentage_may_be_1_to_100(percent, finding):
+    half_over = measured("0.12", "0.1")
+    assert found(half_over, chronic_percent=percent, technical_factor=None).finding == finding
+
+
 @pytest.mark.parametrize("percent", [0, 101])
 def test_percentage_outside_1_to_100_is_refused(percent):
     with pytest.raises(ValueRefused, match="from 1 to 100"):
@@ -114,6 +135,11 @@ def test_period_that_ends_before_it_begins_is_refused(spans):
         spans(date(2026, 2, 1), date(2026, 1, 1))
     with pytest.raises(ValueRefused):
         significant_noncompliance([], [(date(2026, 2, 1), date(2026, 1, 1))])
+
+
+@pytest.mark.parametrize("spans", [rolling_quarters, fixed_halves])
+def test_window_that_ends_on_the_only_day_is_in_the_period(spans):
+    assert spans(SPAN[1], SPAN[1]) == (SPAN,)
 
 
 def test_halves_are_those_of_the_calendar():
