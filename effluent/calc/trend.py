@@ -67,7 +67,7 @@ class Trend:
 
     def direction(self, significance: float = 0.05) -> Direction:
         """Say what the test shows at a two-sided significance."""
-        if self.p > significance:
+        if not self.s or self.p > significance:
             return Direction.NONE
         return Direction.RISING if self.s > 0 else Direction.FALLING
 

@@ -31,6 +31,30 @@ def test_series_that_rises_throughout_is_rising():
     assert mann_kendall(series(6, 5, 4, 3, 2, 1)).direction() == Direction.FALLING
 
 
+def test_z_is_corrected_for_continuity():
+    found = mann_kendall(series(1, 2, 3, 4, 5, 6))
+    assert found.z == pytest.approx(14 / (6 * 5 * 17 / 18) ** 0.5)
+    assert mann_kendall(series(6, 5, 4, 3, 2, 1)).z == -found.z
+
+
+def test_significance_is_reached_by_being_equalled():
+    rising = mann_kendall(series(1, 2, 3, 4))
+    assert rising.direction(rising.p) == Direction.RISING
+    assert mann_kendall(series(2, 2, 2, 2)).direction(1.0) == Direction.NONE
+
+
+def test_two_thousand_days_are_taken():
+    assert mann_kendall(series(*range(2000))).s == 1999 * 1000
+
+
+def test_slope_limits_stand_at_their_ranks():
+    found = sen_slope(series(1, 2, 4, 3, 5, 7), confidence=0.9)
+    slopes = sorted([1, 1.5, 2 / 3, 1, 1.2, 2, 0.5, 1, 1.25, -1, 0.5, 1, 2, 2, 2])
+    rank = (15 - 1.6448536 * (6 * 5 * 17 / 18) ** 0.5) / 2
+    assert found.low == slopes[7]
+    assert found.lower == pytest.approx(slopes[2] + (rank - 3) * (slopes[3] - slopes[2]))
+
+
 def test_order_of_the_points_does_not_matter():
     points = series(3, 1, 4, 1, 5)
     assert mann_kendall(points[::-1]) == mann_kendall(points)
@@ -88,7 +112,7 @@ def test_non_detects_give_bounds_of_the_slope():
 def test_confidence_out_of_reach_has_no_limits():
     few = sen_slope(series(1, 2, 4, 3))
     assert (few.lower, few.upper) == (-inf, inf)
-    assert sen_slope(series(1, 2, 4, 3), confidence=0.9).lower == -1.0
+    assert sen_slope(series(1, 2, 4, 3), confidence=1 - 2 / 24).lower == -1.0
 
 
 @pytest.mark.parametrize("use", [mann_kendall, sen_slope])

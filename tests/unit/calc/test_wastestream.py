@@ -44,7 +44,8 @@ def test_regulated_streams_are_weighted_by_flow():
 def test_mass_limits_grow_with_unregulated_flow_only():
     mass = replace(PLATING, daily=Rational(600), average=Rational(300))
     assert combined_mass([mass, COOLING]).daily == 600
-    assert combined_mass([mass, COOLING, WASH]).average == 450
+    grown = combined_mass([mass, COOLING, WASH])
+    assert (grown.daily, grown.average) == (900, 450)
     assert combined_mass([replace(mass, average=None), WASH]).average is None
 
 
