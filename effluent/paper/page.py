@@ -21,6 +21,7 @@ __all__ = ["MARGIN", "PURPOSE", "Furniture", "state_words", "witness"]
 
 MARGIN = 36.0
 PURPOSE = "Working document: data for completing the official form. Not an official manifest."
+_ITEMS = "Items: EPA forms 8700-22 and 8700-22A."
 _TITLE = "Waste shipment data sheet"
 _QR_SIDE = 62.0
 _QR_NAME = "witness"
@@ -130,7 +131,7 @@ class Furniture:
         canvas.drawString(MARGIN, top - 11, _TITLE)
         canvas.drawRightString(right, top - 11, state_words(self.sheet.state))
         canvas.setFont(REGULAR, 8)
-        canvas.drawString(MARGIN, top - 24, PURPOSE)
+        canvas.drawString(MARGIN, top - 24, f"{PURPOSE} {_ITEMS}")
         canvas.drawRightString(right, top - 24, page)
         low = top - self.head_height + 10
         self._code.drawOn(canvas, MARGIN, low)

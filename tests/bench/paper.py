@@ -81,7 +81,8 @@ def words() -> list[Any]:
     ]
     return [
         "Waste shipment data sheet",
-        "Working document: data for completing the official form. Not an official manifest.",
+        "Working document: data for completing the official form. Not an official manifest. "
+        "Items: EPA forms 8700-22 and 8700-22A.",
         f"Manifest {paper.code}",
         [
             [

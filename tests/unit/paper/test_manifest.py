@@ -35,7 +35,7 @@ def test_unknown_paper_is_refused():
 def test_every_page_says_what_it_is_and_witnesses_the_ledger(paper):
     texts = pages(render(sheet(16, 30, 40), paper=paper))
     for number, text in enumerate(texts, 1):
-        assert PURPOSE in text
+        assert f"{PURPOSE} Items: EPA forms 8700-22 and 8700-22A." in text
         assert f"Page {number} of {len(texts)}" in text
         assert "Manifest M-0007" in text
         assert f"Ledger {LEDGER}, entry 4711" in text
