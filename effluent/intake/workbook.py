@@ -2,10 +2,13 @@
 
 from __future__ import annotations
 
+import re
 import zipfile
+import zlib
 from collections.abc import Iterator
 from dataclasses import dataclass
 from datetime import date, datetime, time, timedelta
+from functools import reduce
 from itertools import islice
 from pathlib import Path
 
@@ -19,6 +22,12 @@ __all__ = ["Workbook", "is_workbook", "open_workbook"]
 _ZIP = b"PK\x03\x04"
 _COMPOUND = b"\xd0\xcf\x11\xe0\xa1\xb1\x1a\xe1"
 _UNPACKED_BYTES = 1 << 30
+_PIECE, _LONGEST_PLACE = 1 << 20, 64
+_COLUMN, _ROW, _FAR_ROW = map(
+    re.compile, (rb' r="([A-Za-z]+)[0-9]', rb' r="[A-Za-z]*([0-9]+)', rb' r="[A-Za-z]*([0-9]{7,})')
+)
+_UNUSUAL = (b' ="', b'\t="', b'\n="', b'\r="', b"\tr=", b"\nr=", b"\rr=")
+_MOST_ROWS, _FEW_COLUMNS, _MOST_CELLS = 1_048_576, 48, 50_400_000
 _SAVE_AS = "save it as .xlsx without macros and without a password, or as CSV"
 
 
@@ -89,18 +98,65 @@ def _inspect(path: Path) -> None:
     """Refuse what must not be unpacked."""
     try:
         with zipfile.ZipFile(path) as archive:
-            members = archive.infolist()
-    except (zipfile.BadZipFile, ValueError, NotImplementedError) as error:
+            problem = _foreign(archive.infolist()) or _spread(archive)
+    except (ValueError, RuntimeError, EOFError, zipfile.BadZipFile, zlib.error) as error:
         raise refused(
             path, "it is cut short or damaged, not a whole workbook; ask for it to be sent again"
         ) from error
+    if problem:
+        raise refused(path, problem)
+
+
+def _foreign(members: list[zipfile.ZipInfo]) -> str:
+    """Return why an archive is not a workbook that is opened here; nothing if it is."""
     names = {member.filename.lower() for member in members}
     if any("vbaproject" in name for name in names) or "xl/workbook.bin" in names:
-        raise refused(path, f"workbooks with macros and binary workbooks are never opened; {_SAVE_AS}")
+        return f"workbooks with macros and binary workbooks are never opened; {_SAVE_AS}"
     if "xl/workbook.xml" not in names:
-        raise refused(path, f"it is an archive but not a workbook; {_SAVE_AS}")
+        return f"it is an archive but not a workbook; {_SAVE_AS}"
     if sum(member.file_size for member in members) > _UNPACKED_BYTES:
-        raise refused(path, "it unpacks to more than 1 GiB; split it, or send CSV")
+        return "it unpacks to more than 1 GiB; split it, or send CSV"
+    return ""
+
+
+def _spread(archive: zipfile.ZipFile) -> str:
+    """Return why a sheet is too wide and long; the reader holds all places up to the last cell at once."""
+    for member in archive.infolist():
+        columns, rows = _extent(archive, member)
+        if rows > _MOST_ROWS or columns * rows > _MOST_CELLS:
+            return (
+                f"a cell stands in column {columns}, and one in row {rows}; "
+                "delete the cells far from the table, or send CSV"
+            )
+    return ""
+
+
+def _extent(archive: zipfile.ZipFile, member: zipfile.ZipInfo) -> tuple[int, int]:
+    """Return the last column and row in which a sheet has cells; a row that is harmless counts as 1."""
+    letters, last_row = {b"A"}, 1
+    for text in _pieces(archive, member):
+        letters.update(_COLUMN.findall(text))
+        last_row = max(last_row, *map(int, _FAR_ROW.findall(text)), 1)
+    columns = max(map(_column_number, letters))
+    if columns > _FEW_COLUMNS:
+        last_row = max(int(row) for text in _pieces(archive, member) for row in [*_ROW.findall(text), b"1"])
+    return columns, last_row
+
+
+def _pieces(archive: zipfile.ZipFile, member: zipfile.ZipInfo) -> Iterator[bytes]:
+    """Yield the text of a sheet, overlapping, with attributes written in the one usual way."""
+    before = b""
+    with archive.open(member) as sheet:
+        while piece := sheet.read(_PIECE):
+            text = before + piece
+            if text.count(b"=") != text.count(b'="') or any(mark in text for mark in _UNUSUAL):
+                text = re.sub(rb"\s*=\s*", b"=", re.sub(rb"\s", b" ", text.replace(b"'", b'"')))
+            yield text
+            before = piece[-_LONGEST_PLACE:]
+
+
+def _column_number(letters: bytes) -> int:
+    return reduce(lambda number, letter: number * 26 + letter - 64, letters.upper(), 0)
 
 
 def _text(cell: object) -> str:

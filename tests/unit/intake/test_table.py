@@ -226,6 +226,22 @@ def test_workbook_whose_sheet_is_broken_is_refused(tmp_path):
         open_table(rewritten(tmp_path, "xl/worksheets/sheet1.xml", b"<worksheet><sheetData><row></c>"))
 
 
+@pytest.mark.parametrize(
+    ("place", "said"),
+    [
+        ('r="XFD1048576"', "column 16384, and one in row 1048576"),
+        ("r='XFD1048576'", "column 16384, and one in row 1048576"),
+        ('\tr\n=\n"BZ800000"', "column 78, and one in row 800000"),
+        ('r="A99999999999"', "column 1, and one in row 99999999999"),
+        ('r="ZZZZZZZ9000"', "row 9000"),
+    ],
+)
+def test_cell_that_would_unfold_a_sheet_without_end_is_refused(tmp_path, place, said):
+    sheet = f'<worksheet><sheetData><row r="1"><c {place}><v>1</v></c></row></sheetData></worksheet>'
+    with pytest.raises(ValueRefused, match=said):
+        open_table(rewritten(tmp_path, "xl/worksheets/sheet1.xml", sheet.encode()))
+
+
 def test_duration_in_a_workbook_comes_as_text(tmp_path):
     with xlsxwriter.Workbook(tmp_path / "results.xlsx") as workbook:
         sheet = workbook.add_worksheet()
