@@ -224,7 +224,8 @@ class ResultRow(Brings, Base):
     file: Mapped[str | None] = refers("file", optional=True)
     file_row: Mapped[int | None]
     __table_args__ = (
-        CheckConstraint("qualifier IN ('=', '<', '>')", name="qualifier"),
+        # no IN: SQLite would build its list anew for every row of a long file
+        CheckConstraint("qualifier = '=' OR qualifier = '<' OR qualifier = '>'", name="qualifier"),
         Index(None, "sample"),
         Index(
             None,

@@ -62,7 +62,6 @@ def forbid_changes_sqlite():
                 f'CREATE TRIGGER "tr_{table}_{change.lower()}" BEFORE {change} ON "{table}" '
                 "BEGIN SELECT RAISE(ABORT, 'the ledger is append-only'); END"
             )
-
         op.execute(
             f'CREATE TRIGGER "tr_{table}_replace" BEFORE INSERT ON "{table}" WHEN {is_there(table)} '
             "BEGIN SELECT RAISE(ABORT, 'the ledger is append-only'); END"
@@ -412,7 +411,9 @@ def create_tables():
         sa.Column("supersedes", WHOLE, nullable=True),
         sa.Column("file", TEXT, nullable=True),
         sa.Column("file_row", WHOLE, nullable=True),
-        sa.CheckConstraint("qualifier IN ('=', '<', '>')", name=op.f("ck_result_qualifier")),
+        sa.CheckConstraint(
+            "qualifier = '=' OR qualifier = '<' OR qualifier = '>'", name=op.f("ck_result_qualifier")
+        ),
         sa.CheckConstraint("\"file\" LIKE 'file/_%'", name=op.f("ck_result_file")),
         sa.CheckConstraint("\"sample\" LIKE 'sample/_%'", name=op.f("ck_result_sample")),
         sa.ForeignKeyConstraint(["file"], ["record.key"], name=op.f("fk_result_file"), ondelete="RESTRICT"),
