@@ -73,9 +73,7 @@ class Receiving:
         if not self._errors:
             answer(self._writing, self._doubts.questions(), accept=accept)
             return
-        last = self._errors[-1].row
-        more = [RowError(last, "", "", f"and {self._not_kept} more bad cells")] if self._not_kept else []
-        raise FileRefused(name, (*self._errors, *more))
+        raise FileRefused(name, tuple(self._errors), self._not_kept)
 
     def _keep(self, errors: Iterable[RowError], prefix: str) -> None:
         for error in errors:

@@ -10,7 +10,7 @@ import pytest
 
 from effluent.__main__ import run
 from effluent.services import demo
-from effluent.services.play import Facts
+from effluent.services.demo.play import Facts
 
 
 @pytest.fixture(autouse=True)

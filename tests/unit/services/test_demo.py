@@ -12,9 +12,9 @@ from effluent.domain import CleanerType, ManifestState, Outcome, WashKind
 from effluent.errors import FileMissing, FileRefused, StorageFailed, WouldOverwrite
 from effluent.services import demo, manifest, register
 from effluent.services.check import Wanted, check
+from effluent.services.demo.play import Facts
 from effluent.services.importing import Order, import_files
 from effluent.services.ledger import history, open_ledger, prove
-from effluent.services.play import Facts
 from effluent.services.wash import balances
 from effluent.store.ledger import Ledger
 from tests.staged import staged

@@ -5,8 +5,8 @@ from __future__ import annotations
 from typing import Any
 
 from effluent.domain import MeasuredBy, Quantity, WashKind
-from effluent.services.scenario import Habit
-from effluent.services.stage import Stage
+from effluent.services.demo.scenario import Habit
+from effluent.services.demo.stage import Stage
 
 __all__ = ["desalination", "grit", "recovery"]
 

@@ -12,11 +12,11 @@ from random import Random
 
 from effluent.domain import Person
 from effluent.errors import FileMissing, StorageFailed, WouldOverwrite
+from effluent.services.demo.play import Facts, perform
+from effluent.services.demo.scenario import mapping
+from effluent.services.demo.stage import Clock, Stage
+from effluent.services.demo.story import LEDGER, tell
 from effluent.services.ledger import create, open_ledger
-from effluent.services.play import Facts, perform
-from effluent.services.scenario import mapping
-from effluent.services.stage import Clock, Stage
-from effluent.services.story import LEDGER, tell
 
 __all__ = ["Demo", "make"]
 

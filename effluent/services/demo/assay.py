@@ -8,9 +8,9 @@ from datetime import timedelta
 from pathlib import Path
 
 from effluent.intake.sheet import write_xlsx
-from effluent.services.scenario import Finding, findings
-from effluent.services.stage import Stage
-from effluent.services.station import Bottle
+from effluent.services.demo.scenario import Finding, findings
+from effluent.services.demo.stage import Stage
+from effluent.services.demo.station import Bottle
 
 __all__ = ["Sending", "long_rows", "spoiled", "wide_rows", "write_long", "write_wide"]
 

@@ -11,12 +11,12 @@ from typing import Any
 from effluent.domain import Container, ContainerKind, Engine, Outcome, Quantity, Site
 from effluent.services import limit, manifest, register, wash
 from effluent.services.check import check
+from effluent.services.demo.post import Post
+from effluent.services.demo.scenario import adoptions, limits, standing
+from effluent.services.demo.shipping import draft, ship
+from effluent.services.demo.stage import FIRST_DAY, Stage
+from effluent.services.demo.station import Bottle, Place, Station
 from effluent.services.ledger import prove
-from effluent.services.post import Post
-from effluent.services.scenario import adoptions, limits, standing
-from effluent.services.shipping import draft, ship
-from effluent.services.stage import FIRST_DAY, Stage
-from effluent.services.station import Bottle, Place, Station
 from effluent.services.wanted import Wanted
 
 __all__ = ["Facts", "perform"]

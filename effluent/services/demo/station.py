@@ -18,9 +18,10 @@ from effluent.domain import (
     Sample,
     Wash,
 )
-from effluent.services import container, nozzle, register, result, sample, wash
-from effluent.services.scenario import habits
-from effluent.services.stage import FIRST_DAY, Stage
+from effluent.services import container, register, result, sample, wash
+from effluent.services.demo import nozzle
+from effluent.services.demo.scenario import habits
+from effluent.services.demo.stage import FIRST_DAY, Stage
 
 __all__ = ["Bottle", "Place", "Station"]
 

@@ -8,10 +8,10 @@ from pathlib import Path
 
 from effluent.domain import Manifest, ManifestLine
 from effluent.services import manifest
+from effluent.services.demo.scenario import standing
+from effluent.services.demo.station import Station
 from effluent.services.load import proposed
-from effluent.services.scenario import standing
 from effluent.services.sheet import pdf
-from effluent.services.station import Station
 
 __all__ = ["draft", "ship"]
 

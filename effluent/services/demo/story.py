@@ -8,8 +8,8 @@ from pathlib import Path
 from textwrap import fill
 
 from effluent.domain import Outcome
-from effluent.services.play import Facts
-from effluent.services.scenario import page
+from effluent.services.demo.play import Facts
+from effluent.services.demo.scenario import page
 from effluent.settings import CAUTION
 
 __all__ = ["LEDGER", "tell"]

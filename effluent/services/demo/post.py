@@ -7,10 +7,10 @@ from datetime import date, time
 from pathlib import Path
 
 from effluent.errors import FileRefused
-from effluent.services.assay import Sending, long_rows, spoiled, wide_rows, write_long, write_wide
+from effluent.services.demo.assay import Sending, long_rows, spoiled, wide_rows, write_long, write_wide
+from effluent.services.demo.stage import Stage
+from effluent.services.demo.station import Bottle, Station
 from effluent.services.importing import Order, import_files
-from effluent.services.stage import Stage
-from effluent.services.station import Bottle, Station
 
 __all__ = ["Post"]
 
