@@ -117,9 +117,14 @@ class RowError(NamedTuple):
 
 
 class FileRefused(InputError):
-    """A file with bad rows: ``FileRefused(name, rows)`` with a tuple of `RowError`."""
+    """A file with bad rows: ``FileRefused(name, rows, more)``.
+
+    ``rows`` is a tuple of `RowError`; ``more`` counts bad cells beyond those. The text shows the first
+    fifty, so that it can be read.
+    """
 
     code = "E104"
+    shown: ClassVar[int] = 50
 
     @property
     def rows(self) -> tuple[RowError, ...]:
@@ -128,9 +133,11 @@ class FileRefused(InputError):
         return rows
 
     def __str__(self) -> str:
-        count = len(self.rows)
+        count = len(self.rows) + sum(self.args[2:])
         heading = f"{self.args[0]}: {count} bad cell{'s' if count != 1 else ''}; nothing was recorded"
-        return "\n".join([heading, *(f"  {row}" for row in self.rows)])
+        rest = count - min(len(self.rows), self.shown)
+        more = [f"  and {rest} more; mend these first, and import again"] if rest else []
+        return "\n".join([heading, *(f"  {row}" for row in self.rows[: self.shown]), *more])
 
 
 class Questioned(InputError):
@@ -283,10 +290,17 @@ class LedgerDamaged(StoreError):
 
 
 class StorageFailed(StoreError):
-    """Disk full, read-only folder, file cannot be written: ``StorageFailed(place, reason)``."""
+    """Disk full, read-only folder, file cannot be written: ``StorageFailed(place, reason, state)``.
+
+    ``state`` says what is on record; left out, nothing is.
+    """
 
     code = "E406"
-    template = "{0} cannot be written ({1}); nothing was recorded"
+    template = "{0} cannot be written ({1}); {2}"
+
+    def __str__(self) -> str:
+        place, reason, *state = self.args
+        return self.template.format(place, reason, *state or ["nothing was recorded"])
 
 
 class ServerMissing(StoreError):

@@ -15,6 +15,7 @@ from effluent.cli.load import line_options, lines_of, paper_options
 from effluent.cli.register import register_group
 from effluent.cli.value import day, line
 from effluent.domain import Manifest
+from effluent.errors import StorageFailed
 
 if TYPE_CHECKING:
     from effluent.services.manifest import Listed, Shown
@@ -225,8 +226,15 @@ def _write(book: Ledger, code: str, pdf: str | None, *, paper: str, as_of: str |
     if pdf is not None:
         from effluent.services import sheet
 
-        sheet.pdf(book, code, pdf, paper=paper, as_of=as_of)
+        try:
+            sheet.pdf(book, code, pdf, paper=paper, as_of=as_of)
+        except StorageFailed as error:
+            raise StorageFailed(*error.args[:2], _on_record(code)) from error
         click.echo(f"the paper is in {show.text(pdf)}", err=True)
+
+
+def _on_record(code: str) -> str:
+    return f"the manifest is on record; print it with: effluent manifest show {show.text(code)} --pdf FILE"
 
 
 def _listed(found: Sequence[Listed]) -> str:

@@ -111,10 +111,16 @@ def refuse_taken(path: Path) -> None:
 
     Raises
     ------
-    WouldOverwrite, FileMissing
-        If something is there, or the folder is not.
+    WouldOverwrite, FileMissing, StorageFailed
+        If something is there, the folder is not, or no file can have that name.
     """
-    if os.path.lexists(path):
+    try:
+        os.lstat(path)
+    except (FileNotFoundError, NotADirectoryError):
+        pass
+    except OSError as error:
+        raise StorageFailed(path, error.strerror or "no file can have that name") from error
+    else:
         raise WouldOverwrite(path)
     if not os.path.isdir(path.absolute().parent):
         raise FileMissing(path.absolute().parent, "make the folder first")

@@ -82,6 +82,7 @@ SAID: list[tuple[EffluentError, str]] = [
         "a is damaged (page 3); keep the file, and restore the last backup: effluent ledger restore",
     ),
     (errors.StorageFailed("a", "disk full"), "a cannot be written (disk full); nothing was recorded"),
+    (errors.StorageFailed("a", "disk full", "M-1 stands"), "a cannot be written (disk full); M-1 stands"),
     (
         errors.ServerMissing("db.example:5432", "no answer"),
         "db.example:5432 cannot be reached (no answer)",

@@ -132,3 +132,14 @@ def test_terminal_of_few_characters_is_no_obstacle() -> None:
     ran = effluent("convert", "1", "名", "L", capture_output=True, env=few)
     assert ran.returncode == 2
     assert ran.stderr.startswith(b"E102: unit '\\u540d' is not known")
+
+
+def test_file_of_bad_rows_is_named_and_stays_readable(
+    monkeypatch: pytest.MonkeyPatch, capsys: pytest.CaptureFixture[str]
+) -> None:
+    rows = tuple(RowError(row, "unit", "", "say which") for row in range(2, 1_002))
+    assert run_body(monkeypatch, raising(FileRefused("lab.csv", rows, 7))) == 2
+    lines = capsys.readouterr().err.splitlines()
+    assert lines[0] == "E104: lab.csv: 1007 bad cells; nothing was recorded"
+    assert lines[-1] == "  and 957 more; mend these first, and import again"
+    assert len(lines) == 52

@@ -12,6 +12,7 @@ import pytest
 
 import effluent.wiring
 from effluent.__main__ import run
+from effluent.errors import StorageFailed
 from effluent.services.ledger import open_ledger
 from effluent.store.ledger import Ledger
 from tests.shipping import add_drums, add_parties, fill, ready
@@ -211,3 +212,28 @@ def test_bad_input_ends_in_a_complaint(manifest: Command) -> None:
             status, _, error = manifest(*line.split())
             assert status == expected
             assert 0 < len(error.splitlines()) <= 4
+
+
+def test_name_that_no_file_can_have_is_refused_before_anything_is_recorded(
+    book: Ledger, manifest: Command, tmp_path: Path
+) -> None:
+    ready(book, "D-1")
+    head, wanted = book.head(), str(tmp_path / ("x" * 300))
+    line = ("--container", "D-1", "--description", "Wash water")
+    status, out, err = manifest(*DRAFT, *PHONE, *line, "--pdf", wanted)
+    assert (status, out, book.head()) == (5, "", head)
+    assert err.endswith("(File name too long); nothing was recorded\n")
+
+
+def test_paper_that_fails_leaves_the_draft_on_record_and_says_so(
+    book: Ledger, manifest: Command, tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    def full(*_: object, **__: object) -> None:
+        raise StorageFailed("paper.pdf", "disk full")
+
+    ready(book, "D-1")
+    monkeypatch.setattr("effluent.services.sheet.pdf", full)
+    line = ("--container", "D-1", "--description", "Wash water")
+    status, _, err = manifest(*DRAFT, *PHONE, *line, "--pdf", str(tmp_path / "paper.pdf"))
+    assert status == 5
+    assert "on record; print it with: effluent manifest show M-0001 --pdf FILE" in err

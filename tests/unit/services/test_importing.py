@@ -41,7 +41,7 @@ def test_more_errors_than_anyone_reads_are_counted(
     monkeypatch.setattr(receiving, "_MOST_ERRORS", 2)
     with world(ledger_place) as book:
         path = lab_file(tmp_path, [f"X-{number},Zn,total,1,mg/L" for number in range(5)])
-        with pytest.raises(FileRefused, match="and 3 more bad cells"):
+        with pytest.raises(FileRefused, match="and 3 more; mend these first"):
             import_files(book, Order(paths=[path]), by="RS")
 
 
