@@ -15,7 +15,7 @@ from effluent.store.writing import Writing
 
 __all__ = ["Receiving"]
 
-_MOST_ERRORS = 10_000
+_MOST_ERRORS, _MOST_LOOKED_FOR = 10_000, 100
 
 
 class Receiving:
@@ -32,6 +32,7 @@ class Receiving:
         self._repeats = Repeats(writing)
         self._errors: list[RowError] = []
         self._not_kept = 0
+        self._missed: dict[str, str] = {}
         self.first_number = 0
         self.count = 0
 
@@ -98,11 +99,13 @@ class Receiving:
                 yield batch.error(at, "analysed_at", reason)
 
     def _missing(self, sample: str) -> str:
-        if self._not_kept:
-            return "no such sample"
-        near = self._writing.near_codes("sample", sample)
-        advice = f"did you mean {' or '.join(near)}?" if near else "record it with: effluent sample take"
-        return f"no such sample in this ledger; {advice}"
+        if sample not in self._missed:
+            if len(self._missed) == _MOST_LOOKED_FOR:
+                return "no such sample"
+            near = self._writing.near_codes("sample", sample)
+            advice = f"did you mean {' or '.join(near)}?" if near else "record it with: effluent sample take"
+            self._missed[sample] = f"no such sample in this ledger; {advice}"
+        return self._missed[sample]
 
     def _add(self, columns: Mapping[str, list[Any]], supersedes: list[int | None], file: str | None) -> None:
         count = len(supersedes)

@@ -45,6 +45,19 @@ def test_more_errors_than_anyone_reads_are_counted(
             import_files(book, Order(paths=[path]), by="RS")
 
 
+def test_near_samples_are_looked_for_a_few_times_only(
+    ledger_place: str, tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    monkeypatch.setattr(receiving, "_MOST_LOOKED_FOR", 1)
+    with world(ledger_place) as book:
+        path = lab_file(tmp_path, [f"{code},Zn,total,1,mg/L" for code in ("S-1", "S-1", "S-2")])
+        with pytest.raises(FileRefused) as caught:
+            import_files(book, Order(paths=[path]), by="RS")
+    first, again, other = (row.reason for row in caught.value.rows if row.column == "sample")
+    assert first == again == "no such sample in this ledger; record it with: effluent sample take"
+    assert other == "no such sample"
+
+
 def test_many_rows_with_one_question_are_asked_about_once(ledger_place: str, tmp_path: Path) -> None:
     with world(ledger_place) as book:
         add_limit(book, "SEW", "zinc", "0.1 mg/L")
