@@ -36,8 +36,8 @@ _FAILED = {Outcome.OVER, Outcome.UNDETERMINED}
 def check(*, against: str | None, working: bool, **given: Any) -> int:
     """Hold results against the limits in force where the water may leave.
 
-    The exit status is 0 when every verdict is within or near, and 1 when one is over or undetermined or
-    when there is nothing to judge.
+    The exit status is 0 when every verdict is within or near, and 1 when one is over or undetermined,
+    when there is nothing to judge, or when the container asked about holds water that no sample speaks for.
     """
     from effluent.services import check as service
     from effluent.wiring import open_ledger
@@ -49,7 +49,12 @@ def check(*, against: str | None, working: bool, **given: Any) -> int:
         show.document(_document(checked, as_of=given["as_of"]))
     else:
         show.screen(*_text(checked, working=working))
-    return int(not checked.verdicts or any(verdict.outcome in _FAILED for verdict in checked.verdicts))
+    return int(not _is_met(checked))
+
+
+def _is_met(checked: Checked) -> bool:
+    failed = any(verdict.outcome in _FAILED for verdict in checked.verdicts)
+    return bool(checked.verdicts) and not failed and not checked.unsampled
 
 
 def _text(checked: Checked, *, working: bool) -> list[str]:
@@ -110,6 +115,7 @@ def _summary(verdicts: tuple[Verdict, ...]) -> str:
 
 def _gaps(checked: Checked) -> str:
     lines = [
+        *([f"NOT SAMPLED: {show.text(checked.unsampled)}"] if checked.unsampled else ()),
         *(f"no reading: {each.water}: {_named(each.limit)}" for each in checked.without_reading),
         *(f"not computed by this version: {_named(limit)}" for limit in checked.not_computed),
         *(f"no verdict on sample {show.text(sample)}" for sample in checked.without_verdict),
@@ -133,4 +139,5 @@ def _document(checked: Checked, *, as_of: str | None) -> dict[str, object]:
         "without_reading": [{"water": each.water, "limit": each.limit} for each in checked.without_reading],
         "not_computed": checked.not_computed,
         "without_verdict": checked.without_verdict,
+        "unsampled": checked.unsampled,
     }

@@ -9,6 +9,7 @@ from effluent.calc.reading import Reading as LaboratoryReading
 from effluent.calc.rule import in_force
 from effluent.calc.verdict import is_computed, judge, strictest, without_reading
 from effluent.domain import Limit, Sample, Verdict
+from effluent.services.unsampled import unsampled
 from effluent.services.wanted import Wanted, wanted_waters
 from effluent.services.water import Water, waters
 from effluent.settings import CAUTION
@@ -29,7 +30,8 @@ class Checked(NamedTuple):
     """What the limits of the place say.
 
     ``strictest`` has for each sample the verdict that decides; ``without_verdict`` the samples about
-    which nothing can be said, because no limit applies or nothing was read.
+    which nothing can be said, because no limit applies or nothing was read; ``unsampled`` why no sample
+    speaks for what the container asked about holds now.
     """
 
     verdicts: tuple[Verdict, ...]
@@ -37,6 +39,7 @@ class Checked(NamedTuple):
     without_reading: tuple[Unread, ...]
     not_computed: tuple[Limit, ...]
     without_verdict: tuple[str, ...]
+    unsampled: str = ""
     caution: str = CAUTION
 
 
@@ -64,7 +67,15 @@ def check(
     with ledger.reading(as_of) as reading:
         points = None if against is None else (reading.value("point", against).code,)
         bodies = wanted_waters(reading, wanted or Wanted(), points=points)
-        return _checked([_Judged.of(reading, water) for water in bodies])
+        checked = _checked([_Judged.of(reading, water) for water in bodies])
+        return checked._replace(unsampled=_unsampled(reading, wanted or Wanted()))
+
+
+def _unsampled(reading: Reading, wanted: Wanted) -> str:
+    """Look at what a container holds now, unless one sample or days gone by are asked about."""
+    if wanted.container is None or wanted.sample or wanted.until:
+        return ""
+    return unsampled(reading, wanted.container)
 
 
 def verdicts_for(

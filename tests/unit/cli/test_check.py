@@ -10,6 +10,7 @@ from effluent.__main__ import run
 from effluent.domain import Qualifier, Quantity, Statistic
 from effluent.settings import CAUTION
 from effluent.store.ledger import Ledger
+from tests.shipping import fill
 from tests.world import add_limit, add_result, add_sample, world
 
 
@@ -84,3 +85,15 @@ def test_json_holds_verdicts_gaps_and_caution(book: Ledger, capsys: pytest.Captu
 def test_an_unknown_name_exits_3(book: Ledger, capsys: pytest.CaptureFixture[str]) -> None:
     assert run(["check", "--point", "SEV"]) == 3
     assert "did you mean SEW?" in capsys.readouterr().err
+
+
+def test_water_that_no_sample_speaks_for_is_no_pass(book: Ledger, capsys: pytest.CaptureFixture[str]) -> None:
+    sample = add_sample(book)
+    add_result(book, sample, "cadmium", "0.01", "mg/L")
+    add_limit(book, "SEW", "cadmium", "0.11 mg/L")
+    assert run(["check", "--container", "T-1"]) == 0
+    fill(book, "T-1", hours=1)
+    capsys.readouterr()
+    assert run(["check", "--container", "T-1"]) == 1
+    assert "NOT SAMPLED: container T-1: water went in after its last sample" in capsys.readouterr().out
+    assert run(["check", "--sample", sample]) == 0

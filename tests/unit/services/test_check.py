@@ -7,6 +7,7 @@ import pytest
 from effluent.domain import Bound, Outcome, Statistic
 from effluent.errors import RecordMissing
 from effluent.services.check import Wanted, check, container_verdicts, verdicts_for
+from tests.shipping import fill
 from tests.world import NOON, add_limit, add_result, add_sample, add_wash, world
 
 
@@ -113,3 +114,13 @@ def test_a_sample_of_another_container_is_not_asked_for(ledger_place: str) -> No
         sample = add_sample(book, point="SEW")
         found = check(book, Wanted(sample=sample, container="T-1"))
     assert found.without_verdict == ()
+
+
+def test_later_water_of_the_container_asked_about_is_told(ledger_place: str) -> None:
+    with world(ledger_place) as book:
+        sample = add_sample(book)
+        fill(book, "T-1", hours=1)
+        assert check(book, Wanted(container="T-1")).unsampled.startswith("container T-1: water went in")
+        assert check(book, Wanted(container="T-1", until=date(2026, 3, 2))).unsampled == ""
+        assert check(book, Wanted(container="T-1", sample=sample)).unsampled == ""
+        assert check(book).unsampled == ""
