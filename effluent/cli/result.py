@@ -56,13 +56,20 @@ def wanted_from(given: dict[str, Any]) -> Wanted:
     "--layout", type=file, metavar="MAPPING", help="Mapping file (TOML) of the laboratory's columns."
 )
 @click.option("--time-zone", type=line, metavar="ZONE", help="Zone of local times, as in Europe/Lisbon.")
+@click.option("--decimal-comma", is_flag=True, help="A comma is the decimal mark, as in 0,005.")
 @click.option("--explain", is_flag=True, help="Show how each column is understood; record nothing.")
 @option.accept
 @option.reason
 @option.as_json
 @option.writes
 def import_command(
-    *, files: tuple[Path, ...], layout: Path | None, time_zone: str | None, explain: bool, **given: Any
+    *,
+    files: tuple[Path, ...],
+    layout: Path | None,
+    time_zone: str | None,
+    decimal_comma: bool,
+    explain: bool,
+    **given: Any,
 ) -> None:
     """Read laboratory files into the ledger: all of them, or nothing.
 
@@ -71,7 +78,7 @@ def import_command(
     from effluent.services.importing import Order
     from effluent.wiring import open_ledger
 
-    order = Order(paths=files, layout=layout, time_zone=time_zone or "")
+    order = Order(paths=files, layout=layout, time_zone=time_zone or "", decimal_comma=decimal_comma)
     with open_ledger(given["ledger"]) as book:
         if explain:
             _explain(book, order, as_json=given["as_json"])

@@ -17,6 +17,7 @@ __all__ = ["Explanation", "explain"]
 
 _FIRST = 5
 _ERRORS_SHOWN = 20
+_MARKS = {".": "point", ",": "comma"}
 _DELIMITERS = {",": "comma", ";": "semicolon", "\t": "tab", "|": "bar"}
 
 
@@ -33,6 +34,7 @@ class Explanation:
     source: str
     heading_row: int
     time_zone: str
+    decimal: str
     columns: Mapping[str, str]
     constants: Mapping[str, str]
     wide: Mapping[str, Mapping[str, str]]
@@ -49,7 +51,7 @@ class Explanation:
         """Return the explanation as text, one line each."""
         return [
             f"{self.name}: {self.source}, headings in row {self.heading_row}",
-            f"local times are those of {self.time_zone}",
+            f"local times are those of {self.time_zone}; a {_MARKS[self.decimal]} is the decimal mark",
             "columns:",
             *(f"  {theirs!r} is {ours}: {FIELDS[ours]}" for ours, theirs in self.columns.items()),
             *(f"  {heading!r} holds one analyte: {_facts(facts)}" for heading, facts in self.wide.items()),
@@ -104,6 +106,7 @@ def explain(path: Path, layout: Layout, *, time_zone: str) -> Explanation:
         source=_source(reader),
         heading_row=table.heading_row,
         time_zone=reader.time_zone,
+        decimal=layout.decimal,
         columns=bound.columns,
         constants=bound.constants,
         wide=bound.wide,

@@ -5,7 +5,7 @@ from __future__ import annotations
 import os
 import tomllib
 from collections.abc import Callable, Iterable, Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from datetime import datetime
 from pathlib import Path
 from types import MappingProxyType
@@ -121,7 +121,7 @@ class Layout:
         """
         present = [heading for heading in headings if heading]
         if self.plain:
-            return _plain(present, name)
+            return replace(_plain(present, name), decimal=self.decimal)
         for heading in (*self.columns.values(), *self.skip, *self.wide):
             if heading not in present:
                 near = near_names(heading, present)

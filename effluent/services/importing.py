@@ -5,7 +5,7 @@ from __future__ import annotations
 import hashlib
 import os
 from collections.abc import Callable, Iterator, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from pathlib import Path
 from typing import NamedTuple
 
@@ -45,12 +45,14 @@ class Order:
 
     ``layout`` is the laboratory's mapping file; without one the files have our own column set.
     ``time_zone`` is that of local times unless the mapping file names one; without both it is the zone of
-    the site of the first sample.
+    the site of the first sample. ``decimal_comma`` says that a comma is the decimal mark, whatever the
+    mapping file says.
     """
 
     paths: Sequence[Path]
     layout: Path | None = None
     time_zone: str = ""
+    decimal_comma: bool = False
 
 
 def import_files(
@@ -88,7 +90,7 @@ def import_files(
     FileMissing, ValueRefused
         If a file is not there, is no table, or does not have the columns of its layout.
     """
-    layout = Layout.read(order.layout) if order.layout else PLAIN
+    layout = _layout(order)
     layout_digest = _digest(order.layout) if order.layout else ""
     records = [_record(path, layout_digest) for path in order.paths]
     names = ", ".join(dict.fromkeys(path.name for path in order.paths))
@@ -101,7 +103,8 @@ def import_files(
             raise ValueRefused("laboratory file", names, "it holds no results; nothing was recorded")
         return Imported(tuple(run.files), run.receiving.first_number, run.receiving.count, run.skipped)
 
-    return ledger.write(job, by=by, action="import results", reason=reason)
+    action = "import results, decimal comma" if order.decimal_comma else "import results"
+    return ledger.write(job, by=by, action=action, reason=reason)
 
 
 def explain_files(ledger: Ledger, order: Order) -> tuple[Explanation, ...]:
@@ -112,12 +115,17 @@ def explain_files(ledger: Ledger, order: Order) -> tuple[Explanation, ...]:
     FileMissing, ValueRefused
         As `import_files`. Bad cells are not raised but counted and shown.
     """
-    layout = Layout.read(order.layout) if order.layout else PLAIN
+    layout = _layout(order)
     with ledger.reading() as reading:
         return tuple(
             explain_file(path, layout, time_zone=_zone(reading, path, layout, order.time_zone))
             for path in order.paths
         )
+
+
+def _layout(order: Order) -> Layout:
+    layout = Layout.read(order.layout) if order.layout else PLAIN
+    return replace(layout, decimal=",") if order.decimal_comma else layout
 
 
 @dataclass

@@ -110,3 +110,8 @@ def test_a_bar_is_drawn_on_a_terminal_only(
         for name, share in (("a.csv", 0.5), ("a.csv", 1.0), ("b.csv", 0.1)):
             progress(name, share)
     assert capsys.readouterr().out == ""
+
+
+def test_decimal_comma_is_an_option(folder: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    assert run(["result", "import", str(folder / "lab.csv"), "--decimal-comma", "--explain"]) == 0
+    assert "a comma is the decimal mark" in capsys.readouterr().out

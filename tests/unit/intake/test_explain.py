@@ -13,7 +13,7 @@ def test_explanation_says_how_each_column_was_understood():
     layout = Layout.read(LABORATORY / "ribeira-long.toml")
     assert explain(LABORATORY / "ribeira-long.csv", layout, time_zone="UTC").lines() == [
         "ribeira-long.csv: text in latin-1, cells divided by semicolon, headings in row 1",
-        "local times are those of Europe/Lisbon",
+        "local times are those of Europe/Lisbon; a comma is the decimal mark",
         "columns:",
         "  'Probenahme' is sample: sample number, as in the ledger",
         "  'Parameter' is analyte: name, symbol or CAS number",

@@ -114,3 +114,15 @@ def test_a_file_without_results_is_refused(ledger_place: str, tmp_path: Path) ->
         with pytest.raises(ValueRefused, match="it holds no results"):
             import_files(book, Order(paths=[lab_file(tmp_path, [])]), by="RS")
         assert book.head() == before
+
+
+def test_decimal_comma_is_declared_with_the_order(ledger_place: str, tmp_path: Path) -> None:
+    with world(ledger_place) as book:
+        path = lab_file(tmp_path, [f"{add_sample(book)};Zn;total;1.234,5;ug/L"], HEAD.replace(",", ";"))
+        with pytest.raises(FileRefused, match="1 bad cell"):
+            import_files(book, Order(paths=[path]), by="RS")
+        order = Order(paths=[path], decimal_comma=True)
+        assert explain_files(book, order)[0].result_count == 1
+        import_files(book, order, by="RS")
+        assert listing(book)[0].result.number == "1234.5"
+        assert book.head().action == "import results, decimal comma"
