@@ -41,7 +41,9 @@ def _described(command: click.Command, path: str) -> Iterator[str]:
         return
     pieces = " ".join(command.collect_usage_pieces(context))
     yield f"{'##' if path.count(' ') == 1 else '###'} {path}\n\n`{path} {pieces}`\n\n{_help(command)}\n"
-    options = [p for p in command.get_params(context) if isinstance(p, click.Option) and "--help" not in p.opts]
+    options = [
+        p for p in command.get_params(context) if isinstance(p, click.Option) and "--help" not in p.opts
+    ]
     if options:
         yield "| option | meaning |\n|---|---|"
         yield from (_row(option) for option in options)
@@ -55,7 +57,8 @@ def _help(command: click.Command) -> str:
 def _row(option: click.Option) -> str:
     takes = "" if option.is_flag else f" {option.make_metavar(click.Context(click.Command('x')))}"
     names = ", ".join(f"`{name}{takes}`" for name in option.opts).replace("|", "\\|")
-    return f"| {names} | {(option.help or '').replace('|', chr(92) + '|')}{' Required.' if option.required else ''} |"
+    meaning = (option.help or "").replace("|", "\\|")
+    return f"| {names} | {meaning}{' Required.' if option.required else ''} |"
 
 
 if __name__ == "__main__":
