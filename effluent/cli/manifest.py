@@ -168,14 +168,15 @@ def returned(*, code: str, ledger: str, by: str, on: date, signed_by: str, copy:
 @manifest.command("void")
 @_code
 @option.reason_required
+@option.accept
 @option.writes
-def void(*, code: str, ledger: str, by: str, reason: str) -> None:
+def void(*, code: str, ledger: str, by: str, reason: str, accept: str | None) -> None:
     """Void a manifest; it stays readable and its containers are free again. CODE is its number."""
     from effluent.services import manifest as manifests
     from effluent.wiring import open_ledger
 
     with open_ledger(ledger) as book:
-        manifests.void(book, code, by=by, reason=reason)
+        manifests.void(book, code, by=by, reason=reason, accept=accept or "")
     show.say(f"manifest {show.text(code)} is void; print it again to mark the paper")
 
 

@@ -222,13 +222,15 @@ def returned(
     ledger.write(job, by=by, action="return manifest")
 
 
-def void(ledger: Ledger, code: str, *, by: str, reason: str) -> None:
+def void(ledger: Ledger, code: str, *, by: str, reason: str, accept: str = "") -> None:
     """Record that a manifest does not stand; its containers are free again, its paper says void.
 
     Raises
     ------
     StateRefused
         If it is void already.
+    Questioned
+        If a carrier has the load and `accept` is empty.
     """
     need_reason(reason, "void")
 
@@ -236,9 +238,21 @@ def void(ledger: Ledger, code: str, *, by: str, reason: str) -> None:
         manifest: Manifest = writing.value("manifest", code)
         if manifest.state is ManifestState.VOID:
             raise StateRefused(f"manifest {code}", "void", "there is nothing more to void")
+        answer(writing, _left(manifest), accept=accept)
         writing.amend(replace(manifest, state=ManifestState.VOID))
 
     ledger.write(job, by=by, action="void manifest", reason=reason)
+
+
+def _left(manifest: Manifest) -> tuple[str, ...]:
+    """Return what is to be asked before a manifest is voided whose load has left, or was received."""
+    if manifest.returned_on is not None:
+        gone = f"its signed copy came back on {manifest.returned_on}"
+    elif manifest.accepted_on is not None:
+        gone = f"the first carrier accepted the load on {manifest.accepted_on}"
+    else:
+        return ()
+    return (f"{gone}: a void sets its containers free in the ledger; are they back on the site?",)
 
 
 def show(ledger: Ledger, code: str, *, as_of: str | None = None) -> Shown:

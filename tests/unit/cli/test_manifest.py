@@ -145,7 +145,9 @@ def test_way_of_a_manifest_from_issue_to_the_signed_copy(
     assert "accepted the load on 2026-05-21" in manifest("accepted", "M-0001", "--on", "2026-05-21")[1]
     signed = ("--signed-by", "K. Invented", "--copy", paper)
     assert "is back since 2026-05-30" in manifest("returned", "M-0001", "--on", "2026-05-30", *signed)[1]
-    assert "is void" in manifest("void", "M-0001", "--reason", "wrong works")[1]
+    void = ("void", "M-0001", "--reason", "wrong works")
+    assert "are they back on the site?" in manifest(*void)[2]
+    assert "is void" in manifest(*void, "--accept", "brought back")[1]
 
 
 def test_issue_with_a_broken_chain_is_refused_with_its_links(book: Ledger, manifest: Command) -> None:

@@ -236,6 +236,18 @@ def test_void_manifest_frees_its_containers(book: Ledger) -> None:
         manifests.void(book, code, by="AM", reason="again")
 
 
+def test_void_of_a_load_that_left_is_questioned(book: Ledger) -> None:
+    code = issued(book)
+    manifests.accepted(book, code, by="AM", on=TODAY)
+    with pytest.raises(Questioned, match="the first carrier accepted the load on"):
+        manifests.void(book, code, by="AM", reason="wrong works")
+    manifests.returned(book, code, by="AM", on=TODAY, signed_by="K")
+    with pytest.raises(Questioned, match="its signed copy came back on"):
+        manifests.void(book, code, by="AM", reason="wrong works")
+    manifests.void(book, code, by="AM", reason="wrong works", accept="refused there, brought back")
+    assert manifests.show(book, code).value.state is ManifestState.VOID
+
+
 def test_listing_counts_the_days_of_what_is_not_back(book: Ledger, ledger_place: str) -> None:
     first = issued(book)
     drafted(book, "D-2")
