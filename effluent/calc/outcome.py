@@ -15,9 +15,9 @@ from effluent.calc.rule import Basis, Cut, action_cut, basis, cut, limit_unit, o
 from effluent.domain import Bound, Fraction, Limit, Outcome, Qualifier, Statistic
 from effluent.errors import NotComputed, ValueRefused
 
-__all__ = ["is_computed", "outcomes"]
+__all__ = ["is_single", "outcomes"]
 
-_COMPUTED = frozenset({Statistic.INSTANTANEOUS, Statistic.DAILY})
+_SINGLE = frozenset({Statistic.INSTANTANEOUS, Statistic.DAILY})
 _CODE = {outcome: code for code, outcome in enumerate(Outcome)}
 
 Ints = NDArray[np.int8]
@@ -26,9 +26,9 @@ Flags = NDArray[np.bool_]
 Floats = NDArray[np.float64]
 
 
-def is_computed(limit: Limit) -> bool:
-    """Say whether this version computes the statistic of a limit."""
-    return limit.statistic in _COMPUTED
+def is_single(limit: Limit) -> bool:
+    """Say whether a limit is held against single readings, each alone or those of a day."""
+    return limit.statistic in _SINGLE
 
 
 def outcomes(readings: pd.DataFrame, limits: Sequence[Limit]) -> pd.DataFrame:
@@ -60,7 +60,7 @@ def outcomes(readings: pd.DataFrame, limits: Sequence[Limit]) -> pd.DataFrame:
     Raises
     ------
     NotComputed
-        If a limit's statistic is not computed by this version.
+        If a limit is not held against single readings.
     ValueRefused
         If a value is not a number, or a text is missing.
 
@@ -188,7 +188,7 @@ def _codes(readings: pd.DataFrame, name: str, order: tuple[Qualifier, ...] | tup
 
 
 def _refuse_uncomputed(limit: Limit) -> None:
-    if not is_computed(limit):
+    if not is_single(limit):
         raise NotComputed(
             f"limit {limit.code} ({limit.statistic}, {limit.analyte})",
             "work it out by hand, and check the other limits without it",

@@ -2,24 +2,20 @@
 
 from __future__ import annotations
 
-import re
 from collections.abc import Iterable, Mapping, Sequence
 from datetime import date
 from math import inf, isnan
 
-from effluent.calc.outcome import is_computed, outcomes
+from effluent.calc.line import cautions
+from effluent.calc.outcome import is_single, outcomes
 from effluent.calc.reading import Reading, frame
 from effluent.calc.rule import Basis, in_force
 from effluent.calc.working import Finding, reason, working
 from effluent.domain import Limit, Outcome, Statistic, Verdict
 
-__all__ = ["Reading", "is_computed", "judge", "outcomes", "strictest", "without_reading"]
+__all__ = ["Reading", "is_single", "judge", "outcomes", "strictest", "without_reading"]
 
 _WORST_FIRST = (Outcome.OVER, Outcome.UNDETERMINED, Outcome.NEAR, Outcome.WITHIN)
-_ESTIMATED = re.compile(r"(?<![A-Z])U?J(?![A-Z])")
-_UNVERIFIED = "limit not verified by a second person"
-_LATE = "analysed outside its holding time"
-_GUESSED = "estimated value (J)"
 _OPEN = "the action level lies below what the reading can show: near or not is not known"
 
 
@@ -44,7 +40,7 @@ def judge(readings: Sequence[Reading], limits: Sequence[Limit]) -> tuple[Verdict
     Raises
     ------
     NotComputed
-        If a limit's statistic is not computed by this version.
+        If a limit is not held against single readings.
     ValueRefused
         If a value is not a number.
 
@@ -184,10 +180,5 @@ def _reason(deciding: Finding, count: int) -> str:
 
 
 def _notes(group: list[Finding]) -> tuple[str, ...]:
-    said = {
-        _UNVERIFIED: group[0].limit.verified_by is None,
-        _LATE: any(finding.reading.late for finding in group),
-        _GUESSED: any(_ESTIMATED.search(finding.reading.flag.upper()) for finding in group),
-        _OPEN: any(finding.action_open for finding in group),
-    }
-    return tuple(note for note, holds in said.items() if holds)
+    told = cautions(group[0].limit, [finding.reading for finding in group])
+    return (*told, _OPEN) if any(finding.action_open for finding in group) else told

@@ -6,19 +6,14 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from fractions import Fraction as Rational
 
+from effluent.calc.line import conversion_line, forbidden, holds, limit_lines, reading_line, short
 from effluent.calc.reading import Reading
 from effluent.calc.rule import Basis, action_cut, limit_unit, place, rounded, written_cut
-from effluent.calc.units import KINDS, conversion, convert, decimal_text, kind_of
-from effluent.domain import Bound, BrokenBy, Fraction, Limit, Outcome, Quantity, Rounding
+from effluent.calc.units import KINDS, convert, kind_of
+from effluent.domain import Bound, Fraction, Limit, Outcome, Rounding
 
 __all__ = ["Finding", "reason", "working"]
 
-_FORBIDDEN = {
-    (Bound.MAXIMUM, BrokenBy.BEYOND): ("above", ">"),
-    (Bound.MAXIMUM, BrokenBy.REACHING): ("at or above", ">="),
-    (Bound.MINIMUM, BrokenBy.BEYOND): ("below", "<"),
-    (Bound.MINIMUM, BrokenBy.REACHING): ("at or below", "<="),
-}
 _KNOWN = {
     Basis.VALUE: ("", "="),
     Basis.AT_MOST: ("at most ", "<="),
@@ -79,7 +74,7 @@ def reason(finding: Finding) -> str:
     if finding.outcome == Outcome.UNDETERMINED:
         return _not_shown(finding)
     verb = "is" if finding.outcome == Outcome.OVER else "is not"
-    sentence = f"{_subject(finding)} {verb} {_forbidden(limit)[0]} the {_named(limit)}"
+    sentence = f"{_subject(finding)} {verb} {forbidden(limit)[0]} the {_named(limit)}"
     if finding.outcome == Outcome.NEAR:
         sentence += f", but it reaches the action level {limit.action_level}"
     return sentence
@@ -113,7 +108,8 @@ def working(
     -----
     Rules: the section "Verdicts" of the documented calculations.
     """
-    lines = [*_day(finding, beside), _reading(finding.reading), _conversion(finding), *_rule(finding.limit)]
+    lines = [*_day(finding, beside), reading_line(finding.reading), _conversion(finding)]
+    lines += limit_lines(finding.limit)
     if finding.basis in _KNOWN:
         lines += [*_rounding(finding), *_comparison(finding), *_action(finding)]
     lines += [f"outcome: {finding.outcome}: {reason(finding)}", _margin(finding)]
@@ -122,10 +118,6 @@ def working(
 
 def _named(limit: Limit) -> str:
     return f"limit {limit.value}"
-
-
-def _forbidden(limit: Limit) -> tuple[str, str]:
-    return _FORBIDDEN[limit.bound, limit.broken_by]
 
 
 def _kinds_differ(reading: Reading, limit: Limit) -> str:
@@ -143,7 +135,7 @@ def _not_shown(finding: Finding) -> str:
         own = reading.reporting_limit in ("", reading.number)
         bound = f"{'reporting limit' if own else 'bound'} {reading.number} {reading.unit}".rstrip()
         return f"{bound} lies above the {_named(limit)}: the reading proves nothing"
-    what = f"the truth is {_forbidden(limit)[0]} the {_named(limit)}"
+    what = f"the truth is {forbidden(limit)[0]} the {_named(limit)}"
     sentence = f"{_subject(finding)}: whether {what} is not shown"
     if {reading.fraction, limit.fraction} == {Fraction.TOTAL, Fraction.TOTAL_RECOVERABLE}:
         sentence += f"; if the limit's document takes both as one, enter it for {reading.fraction} too"
@@ -156,7 +148,7 @@ def _subject(finding: Finding) -> str:
     if reading.fraction != limit.fraction:
         subject += f" (the reading is of {reading.fraction}, the limit for {limit.fraction})"
     if finding.basis == Basis.VALUE and limit.rounding == Rounding.SIGNIFICANT_FIGURES:
-        after = _short(rounded(_in_limit_unit(finding), limit.value))
+        after = short(rounded(_in_limit_unit(finding), limit.value))
         subject += f", rounded to {f'{after} {limit.value.unit}'.rstrip()},"
     return subject
 
@@ -168,42 +160,11 @@ def _day(finding: Finding, beside: Sequence[Finding]) -> list[str]:
     return [f"readings of {finding.reading.day}: {listed}", f"deciding: result {finding.reading.row}"]
 
 
-def _reading(reading: Reading) -> str:
-    reported = f", reported as {reading.text!r}" if reading.text not in ("", str(reading)) else ""
-    flag = f", flag {reading.flag}" if reading.flag else ""
-    return (
-        f"reading: result {reading.row}, sample {reading.sample}, {reading.day}: {reading.analyte}, "
-        f"{reading.fraction}: {reading}{reported}{flag}"
-    )
-
-
 def _conversion(finding: Finding) -> str:
-    reading, limit = finding.reading, finding.limit
-    unit, wanted = reading.unit or KINDS["pH"], limit.value.unit or KINDS["pH"]
-    if finding.basis == Basis.OTHER_KIND:
-        return f"conversion: none from {unit} to {wanted}"
-    if unit == wanted:
-        return f"conversion: none needed, both in {unit}"
-    density = Quantity.parse(reading.density) if reading.density else None
-    shown = conversion(Quantity(reading.number, unit).magnitude, unit, wanted, density=density).working
-    return "conversion: " + shown.replace("×", "x").replace("≈", "~")
-
-
-def _rule(limit: Limit) -> list[str]:
-    word, _ = _forbidden(limit)
-    until = f" to {limit.effective_to}" if limit.effective_to else ""
-    where = f", {limit.written_at}" if limit.written_at else ""
-    checked = f"verified by {limit.verified_by}" if limit.verified_by else "not verified by a second person"
-    return [
-        f"limit {limit.code}: {limit.bound} {limit.value}, {limit.statistic}, {limit.analyte}, "
-        f"{limit.fraction}; broken by a reading {word} it; readings compared {_compared(limit)}",
-        f"source: {limit.authority}: {limit.document}{where}; in force from {limit.effective_from}{until}; "
-        f"entered by {limit.entered_by}, {checked}",
-    ]
-
-
-def _compared(limit: Limit) -> str:
-    return "as reported" if limit.rounding == Rounding.AS_REPORTED else "rounded to the limit's last figure"
+    if finding.basis != Basis.OTHER_KIND:
+        return conversion_line(finding.reading, finding.limit)
+    unit, wanted = finding.reading.unit or KINDS["pH"], finding.limit.value.unit or KINDS["pH"]
+    return f"conversion: none from {unit} to {wanted}"
 
 
 def _in_limit_unit(finding: Finding) -> Rational:
@@ -211,40 +172,27 @@ def _in_limit_unit(finding: Finding) -> Rational:
     return convert(reading.exact, reading.canonical_unit, unit)
 
 
-def _short(value: Rational) -> str:
-    text = decimal_text(value)
-    return text if Rational(text) == value else f"~{text}"
-
-
 def _rounding(finding: Finding) -> list[str]:
     limit = finding.limit
     if limit.rounding == Rounding.AS_REPORTED:
         return []
-    line = (
-        f"rounding: half to even, to a multiple of {_short(place(limit.value))} {limit.value.unit}".rstrip()
-    )
+    line = f"rounding: half to even, to a multiple of {short(place(limit.value))} {limit.value.unit}".rstrip()
     if finding.basis == Basis.VALUE:
         value = _in_limit_unit(finding)
-        line += f": {_short(value)} -> {_short(rounded(value, limit.value))}"
+        line += f": {short(value)} -> {short(rounded(value, limit.value))}"
     return [line]
 
 
 def _comparison(finding: Finding) -> list[str]:
     limit, value = finding.limit, _in_limit_unit(finding)
-    symbol, edge = _forbidden(limit)[1], _short(limit.value.magnitude)
+    symbol, edge = forbidden(limit)[1], short(limit.value.magnitude)
     if finding.basis != Basis.VALUE:
-        known = f"known: truth {_KNOWN[finding.basis][1]} {_short(value)} {limit.value.unit}".rstrip()
+        known = f"known: truth {_KNOWN[finding.basis][1]} {short(value)} {limit.value.unit}".rstrip()
         return [f"{known}; the limit is broken by {symbol} {edge}: {_LEFT[finding.outcome]}"]
     if limit.rounding == Rounding.SIGNIFICANT_FIGURES:
         value = rounded(value, limit.value)
-    broken = "true" if _holds(value, symbol, limit.value.magnitude) else "false"
-    return [f"comparison: {_short(value)} {symbol} {edge} {limit.value.unit}".rstrip() + f" is {broken}"]
-
-
-def _holds(value: Rational, symbol: str, other: Rational) -> bool:
-    if value == other:
-        return symbol.endswith("=")
-    return value > other if symbol.startswith(">") else value < other
+    broken = "true" if holds(value, symbol, limit.value.magnitude) else "false"
+    return [f"comparison: {short(value)} {symbol} {edge} {limit.value.unit}".rstrip() + f" is {broken}"]
 
 
 def _action(finding: Finding) -> list[str]:
@@ -252,8 +200,8 @@ def _action(finding: Finding) -> list[str]:
     if level is None or finding.basis != Basis.VALUE:
         return []
     symbol = ">=" if limit.bound == Bound.MAXIMUM else "<="
-    reached = "true" if _holds(finding.reading.exact, symbol, level.value) else "false"
-    shown = f"{_short(finding.reading.exact)} {symbol} {_short(level.value)} {limit_unit(limit.value)}"
+    reached = "true" if holds(finding.reading.exact, symbol, level.value) else "false"
+    shown = f"{short(finding.reading.exact)} {symbol} {short(level.value)} {limit_unit(limit.value)}"
     return [f"action level {limit.action_level}: {shown} is {reached}"]
 
 
@@ -270,5 +218,5 @@ def _margin(finding: Finding) -> str:
         else "at most "
     )
     unit = limit_unit(finding.limit.value)
-    share = f"({_short(first)} - {_short(second)}) / {_short(abs(limit))} in {unit}"
+    share = f"({short(first)} - {short(second)}) / {short(abs(limit))} in {unit}"
     return f"margin: {more}{share} = {finding.margin:.4g}"

@@ -7,7 +7,7 @@ from typing import NamedTuple
 
 from effluent.calc.reading import Reading as LaboratoryReading
 from effluent.calc.rule import in_force
-from effluent.calc.verdict import is_computed, judge, strictest, without_reading
+from effluent.calc.verdict import is_single, judge, strictest, without_reading
 from effluent.domain import Limit, Sample, Verdict
 from effluent.services.unsampled import unsampled
 from effluent.services.wanted import Wanted, wanted_waters
@@ -107,13 +107,13 @@ class _Judged(NamedTuple):
     @classmethod
     def of(cls, reading: Reading, water: Water) -> _Judged:
         limits = _limits(reading, water)
-        computed = [limit for limit in limits if is_computed(limit)]
+        computed = [limit for limit in limits if is_single(limit)]
         readings = _readings(reading, water)
         return cls(
             water,
             judge(readings, computed),
             without_reading(readings, computed),
-            tuple(limit for limit in limits if not is_computed(limit)),
+            tuple(limit for limit in limits if not is_single(limit)),
         )
 
 
