@@ -1,7 +1,8 @@
 """Exact conversion between units, with rational numbers throughout.
 
 The factors are those of the pint registry, read with `fractions.Fraction`; the registry takes about half a
-second to build and is built on first use. What users may write is in `effluent.calc.spelling`.
+second to build and is built on first use, which is not before units differ by more than metric prefixes.
+What users may write is in `effluent.calc.spelling`.
 """
 
 from __future__ import annotations
@@ -64,6 +65,12 @@ READING_KINDS: Mapping[str, frozenset[str]] = MappingProxyType(
 
 _ALIKE = ({"density", "concentration"},)
 
+# SI Brochure, 9th edition, table 7
+_PREFIXES = {"nano": -9, "micro": -6, "milli": -3, "centi": -2, "deci": -1, "": 0, "hecto": 2, "kilo": 3}
+_METRIC = {
+    prefix + name: (name, power) for name in ("gram", "liter", "meter") for prefix, power in _PREFIXES.items()
+}
+
 
 @dataclass(frozen=True)
 class Conversion:
@@ -125,11 +132,26 @@ def canonical_unit(unit: str) -> str:
 @lru_cache(maxsize=4096)
 def _line(source: str, target: str) -> tuple[Fraction, Fraction]:
     """Return factor and offset between two registry names, from two points of the line."""
-    if source == target:
-        return Fraction(1), Fraction(0)
+    power = 0 if source == target else _metric_power(source, target)
+    if power is not None:
+        return Fraction(10) ** power, Fraction(0)
     registry = _registry()
     zero, one = (Fraction(registry.Quantity(Fraction(x), source).to(target).magnitude) for x in (0, 1))
     return one - zero, zero
+
+
+def _metric_power(source: str, target: str) -> int | None:
+    """Return n where two registry names differ by prefixes worth 10**n alone, ``None`` where by more."""
+    units = [[_METRIC.get(part) for part in name.split("/")] for name in (source, target)]
+    if len(units[0]) != len(units[1]):
+        return None
+    power, sign = 0, 1
+    for one, other in zip(*units, strict=True):
+        if one is None or other is None or one[0] != other[0]:
+            return None
+        power += sign * (one[1] - other[1])
+        sign = -1
+    return power
 
 
 @lru_cache(maxsize=4096)

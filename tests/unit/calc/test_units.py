@@ -3,7 +3,9 @@
 import subprocess
 import sys
 from fractions import Fraction
+from itertools import permutations
 
+import pint
 import pytest
 
 from effluent.calc.number import leading_power
@@ -303,8 +305,16 @@ def test_power_of_ten_refuses_different_kinds():
 
 def test_the_registry_is_loaded_only_when_a_factor_is_needed():
     code = (
-        "import sys; from effluent.calc import units; units.kind_of('ug/L');"
+        "import sys; from effluent.calc import units; units.power_of_ten('ug/L', 'mg/L');"
         "assert 'pint' not in sys.modules;"
-        "units.power_of_ten('ug/L', 'mg/L'); assert 'pint' in sys.modules"
+        "units.power_of_ten('gal', 'L'); assert 'pint' in sys.modules"
     )
     subprocess.run([sys.executable, "-c", code], check=True, timeout=60)
+
+
+def test_metric_prefixes_are_those_of_the_registry() -> None:
+    registry = pint.UnitRegistry(non_int_type=Fraction)
+    for names in (("ng/L", "ug/mL", "mg/dL", "kg/hL", "g/kL"), ("mL", "cL", "kL"), ("mg/kg", "ng/g")):
+        for unit, wanted in permutations(names, 2):
+            expected = registry.Quantity(Fraction(1), unit).to(wanted).magnitude
+            assert convert(Fraction(1), unit, wanted) == expected
