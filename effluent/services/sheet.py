@@ -31,7 +31,7 @@ from effluent.paper.sheet import Generator, LaboratoryRow, ManifestSheet, Origin
 from effluent.reference.code import container_code, container_codes, unit_code, unit_codes
 from effluent.services.container import Origin
 from effluent.services.moment import local_day
-from effluent.services.question import accepted_because
+from effluent.services.question import accepted_because, plainly
 from effluent.services.release import Cargo, cargos_of, missing_links
 from effluent.store.backup import appearing
 from effluent.store.database import refuse_taken
@@ -243,7 +243,7 @@ def _said(version: Version) -> str:
     """Return what the paper says of a version that issued, accepted, returned or voided the manifest."""
     manifest: Manifest = version.value
     if manifest.state is ManifestState.VOID:
-        return f"Void since {version.entry.recorded_at[:10]} (UTC): {version.entry.reason}."
+        return f"Void since {version.entry.recorded_at[:10]} (UTC): {plainly(version.entry.reason)}."
     if manifest.state is ManifestState.RETURNED:
         return f"Signed copy came back on {manifest.returned_on}, signed by {manifest.signed_by}."
     if manifest.accepted_on is not None:

@@ -3,7 +3,7 @@ from __future__ import annotations
 import pytest
 
 from effluent.errors import Questioned
-from effluent.services.question import answer
+from effluent.services.question import answer, plainly
 
 
 class Noting:
@@ -32,3 +32,14 @@ def test_entry_keeps_answer_and_questions() -> None:
     writing = Noting()
     answer(writing, ["rain?", "twice?"], accept=" it rained ")  # type: ignore[arg-type]
     assert writing.said == ["accepted: it rained (questioned: rain?; twice?)"]
+
+
+@pytest.mark.parametrize(
+    ("kept", "told"),
+    [
+        ("wrong works", "wrong works"),
+        ("wrong works; accepted: brought back (questioned: is it?)", "wrong works; brought back"),
+    ],
+)
+def test_reason_is_told_without_the_questions(kept: str, told: str) -> None:
+    assert plainly(kept) == told

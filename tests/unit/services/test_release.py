@@ -123,5 +123,5 @@ def test_issued_and_returned_containers_are_shipped(book: Ledger) -> None:
     assert missing(book, "D-1") == ("container D-1: it was shipped on another manifest",)
     manifests.returned(book, code, by="AM", on=NOW.date(), signed_by="K. Invented")
     assert shipped(book) == ["D-1", "D-2"]
-    manifests.void(book, code, by="AM", reason="wrong site")
+    manifests.void(book, code, by="AM", reason="wrong site", accept="brought back")
     assert shipped(book) == []

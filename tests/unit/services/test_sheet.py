@@ -137,12 +137,12 @@ def test_state_note_tells_the_life_of_the_manifest(book: Ledger) -> None:
     manifests.issue(book, code, by="AM", on=date(2026, 5, 20), accept="the works takes it")
     manifests.accepted(book, code, by="AM", on=date(2026, 5, 21))
     manifests.returned(book, code, by="AM", on=date(2026, 5, 30), signed_by="K. Invented")
-    manifests.void(book, code, by="AM", reason="wrong works")
+    manifests.void(book, code, by="AM", reason="wrong works", accept="refused there, brought back")
     assert worded(book, code).state_note == (
         "Questioned at issue (a verdict of annex A or a quantity), and accepted: the works takes it."
         " The first carrier accepted the load on 2026-05-21."
         " Signed copy came back on 2026-05-30, signed by K. Invented."
-        " Void since 2026-06-01 (UTC): wrong works."
+        " Void since 2026-06-01 (UTC): wrong works; refused there, brought back."
     )
 
 
