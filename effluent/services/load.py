@@ -101,7 +101,7 @@ def _prepared_line(reading: Reading, line: ManifestLine, site: Site) -> Manifest
     if container.site != site.code:
         remedy = f"it stands at {container.site}, the manifest is for {site.code}"
         raise ValueRefused("container", container.code, remedy)
-    container_code(container.kind, container.material)
+    _check_material(container)
     if not line.description.strip():
         raise ValueRefused("description", line.description, "describe the waste as the place's rules require")
     return replace(
@@ -110,6 +110,17 @@ def _prepared_line(reading: Reading, line: ManifestLine, site: Site) -> Manifest
         waste_codes=_waste_codes(line.waste_codes),
         quantity=_quantity(reading, line),
     )
+
+
+def _check_material(container: Container) -> None:
+    try:
+        container_code(container.kind, container.material)
+    except ValueRefused as refused:
+        change = f"effluent container amend {container.code} --material … --reason …"
+        what, material = f"material of {container.kind} {container.code}", container.material
+        raise ValueRefused(
+            what, material, f"steel, plastic, fibre or wood is needed; say it with: {change}"
+        ) from refused
 
 
 def _waste_codes(written: str) -> str:

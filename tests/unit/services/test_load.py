@@ -134,7 +134,7 @@ def test_contradictions_are_refused(book: Ledger) -> None:
         "no container 'D-9'": manifest(line("D-9", "1 L")),
         "no company 'NONE'": manifest(facility="NONE"),
         "it stands at LIS, the manifest is for OPO": manifest(one, site="OPO"),
-        "material of a drum": manifest(line("X", "1 L")),
+        "effluent container amend X --material": manifest(line("X", "1 L")),
     }
     for text, wanted in expected.items():
         assert text in refusal(book, wanted)
