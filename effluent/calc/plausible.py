@@ -2,79 +2,72 @@
 
 from __future__ import annotations
 
-import numpy as np
-import pandas as pd
-from numpy.typing import ArrayLike, NDArray
+from collections import defaultdict
+from collections.abc import Hashable, Iterable
+from statistics import median
+from typing import TypeVar
 
-__all__ = [
-    "far_above_history",
-    "history_question",
-    "medians",
-    "reporting_above_limit",
-    "reporting_question",
-]
+__all__ = ["FAR", "history_question", "is_far", "medians", "reporting_question"]
 
-_FAR = 1000.0
-_BY = ["point", "analyte", "canonical_unit"]
+K = TypeVar("K", bound=Hashable)
 
-Flags = NDArray[np.bool_]
+FAR = 1000.0
+"""How many times its history a reading is worth a question: the factor between milli and micro."""
 
 
-def medians(history: pd.DataFrame) -> pd.Series:
-    """Return the median reading of each point, analyte and canonical unit.
+def medians(history: Iterable[tuple[K, float]]) -> dict[K, float]:
+    """Return the median reading of each key, such as analyte and canonical unit.
 
     Parameters
     ----------
-    history : pandas.DataFrame, n rows
-        ``point``, ``analyte``, ``canonical_unit`` and ``value`` (float64, canonical unit, non-detects at
-        their bound).
+    history : iterable of (key, float)
+        Readings in the canonical unit, non-detects at their bound.
 
     Returns
     -------
-    pandas.Series of float64
-        Indexed by the three; empty without history.
+    dict of key to float
+        Empty without history.
 
     Raises
     ------
-    KeyError
-        If a column is missing.
+    ValueRefused
+        Never.
 
     Notes
     -----
     The median, because one wrong unit in the history must not hide the next.
     """
-    return history.groupby(_BY, observed=True)["value"].median()
+    values: defaultdict[K, list[float]] = defaultdict(list)
+    for key, value in history:
+        values[key].append(value)
+    return {key: median(found) for key, found in values.items()}
 
 
-def far_above_history(readings: pd.DataFrame, history: pd.Series) -> Flags:
-    """Say which readings are a thousand times their history or more, as when ug/L was typed as mg/L.
+def is_far(value: float, usual: float | None) -> bool:
+    """Tell whether a reading is `FAR` times its history or more, as when ug/L was typed as mg/L.
 
     Parameters
     ----------
-    readings : pandas.DataFrame, n rows
-        Columns as for `medians`.
-    history : pandas.Series
-        From `medians`.
+    value : float
+        Reading in the canonical unit.
+    usual : float or None
+        Median of its history in the same unit; ``None`` without one.
 
     Returns
     -------
-    ndarray of bool, shape (n,)
+    bool
         False where there is no history, or its median is not above zero.
 
     Raises
     ------
-    KeyError
-        If a column is missing.
+    ValueRefused
+        Never.
 
     Notes
     -----
-    The factor is that between the prefixes milli and micro; that it is worth a question is common practice,
-    no source.
+    That the factor between milli and micro is worth a question is common practice, no source.
     """
-    keys = pd.MultiIndex.from_frame(readings[_BY])
-    known = history.reindex(keys).to_numpy(dtype=np.float64)
-    far: Flags = (known > 0) & (readings["value"].to_numpy(dtype=np.float64) >= _FAR * known)
-    return far
+    return usual is not None and usual > 0 and value >= FAR * usual
 
 
 def history_question(reading: str, median: float, *, unit: str) -> str:
@@ -101,40 +94,12 @@ def history_question(reading: str, median: float, *, unit: str) -> str:
 
     Notes
     -----
-    See `far_above_history`.
+    See `is_far`.
     """
     return (
         f"{reading} is a thousand times the median of this point, {median:.4g} {unit}, or more: "
         "is the unit right?"
     )
-
-
-def reporting_above_limit(reporting: ArrayLike, limit: ArrayLike) -> Flags:
-    """Say which reporting limits lie above the limit in force, so that a non-detect would prove nothing.
-
-    Parameters
-    ----------
-    reporting : array_like of float, shape (n,)
-        Reporting limits in the canonical unit; NaN where none was given.
-    limit : array_like of float, shape (n,) or ()
-        Lowest maximum in force in the same unit; NaN where there is none.
-
-    Returns
-    -------
-    ndarray of bool, shape (n,)
-        False where either is NaN. A reporting limit equal to the limit still proves it met.
-
-    Raises
-    ------
-    ValueError
-        If the shapes do not fit.
-
-    Notes
-    -----
-    Follows from the rule for non-detects in the section "Verdicts" of the documented calculations.
-    """
-    above: Flags = np.asarray(reporting, dtype=np.float64) > np.asarray(limit, dtype=np.float64)
-    return above
 
 
 def reporting_question(reporting: str, limit: str) -> str:
@@ -157,7 +122,8 @@ def reporting_question(reporting: str, limit: str) -> str:
 
     Notes
     -----
-    See `reporting_above_limit`.
+    Follows from the rule for non-detects in the section "Verdicts" of the documented calculations. A
+    reporting limit equal to the limit still proves it met.
     """
     return (
         f"the reporting limit {reporting} lies above the limit {limit} in force: a non-detect would prove "

@@ -8,9 +8,7 @@ from math import inf
 from typing import Any
 from zoneinfo import ZoneInfo
 
-import pandas as pd
-
-from effluent.calc.plausible import far_above_history, history_question, medians, reporting_question
+from effluent.calc.plausible import FAR, history_question, is_far, medians, reporting_question
 from effluent.calc.rule import in_force, limit_unit, written_cut
 from effluent.domain import Bound, Limit
 from effluent.services.bottle import Bottle, Bottles
@@ -20,7 +18,6 @@ __all__ = ["Doubts"]
 
 Columns = Mapping[str, Sequence[Any]]
 
-_FAR = 1000
 _LATEST = 200  # samples of a place whose results are its history
 _ROWS_NAMED, _MOST_QUESTIONS = 5, 50
 
@@ -31,7 +28,7 @@ class Doubts:
     def __init__(self, reading: Reading, bottles: Bottles) -> None:
         self._reading = reading
         self._bottles = bottles
-        self._histories: dict[str, pd.Series] = {}
+        self._histories: dict[str, dict[tuple[str, str], float]] = {}
         self._far: dict[str, float] = {}
         self._limits = _Limits(reading)
         self._asked: dict[tuple[str, ...], _Asked] = {}
@@ -55,36 +52,29 @@ class Doubts:
         if place in self._histories:
             return
         self._histories[place] = found = self._history(place)
-        for key, median in zip(found.index.to_list(), found.to_list(), strict=True):
+        for (analyte, _), median in found.items():
             if median > 0:
-                self._far[key[1]] = min(self._far.get(key[1], inf), _FAR * median)
+                self._far[analyte] = min(self._far.get(analyte, inf), FAR * median)
 
-    def _history(self, place: str) -> pd.Series:
+    def _history(self, place: str) -> dict[tuple[str, str], float]:
         noun, _, code = place.partition("/")
         samples = self._reading.latest_samples(**{noun: code}, most=_LATEST) if code else ()
         names = ("entry", "analyte", "canonical_unit", "value")
-        frame = pd.DataFrame(self._reading.result_columns(names, samples=samples)).assign(point=place)
-        earlier = frame[frame["entry"] < self._reading.as_of].astype({"value": "float64"})
-        return medians(earlier)
+        found = self._reading.result_columns(names, samples=samples)
+        return medians(
+            ((analyte, unit), value)
+            for entry, analyte, unit, value in zip(*found.values(), strict=True)
+            if entry < self._reading.as_of
+        )
 
     def _ask_history(self, columns: Columns, labels: Sequence[str], places: Sequence[str]) -> None:
         far = self._far
-        maybe = [
-            at
-            for at, (analyte, value) in enumerate(zip(columns["analyte"], columns["value"], strict=True))
-            if analyte in far and value >= far[analyte] * 0.999
-        ]
-        if not maybe:
-            return
-        frame = pd.DataFrame(
-            {name: [columns[name][at] for at in maybe] for name in ("analyte", "canonical_unit", "value")}
-        ).assign(point=[places[at] for at in maybe])
-        known = [self._histories[place] for place in dict.fromkeys(frame["point"])]
-        history = pd.concat([each for each in known if not each.empty] or known[:1])
-        for at, is_far in zip(maybe, far_above_history(frame, history), strict=True):
-            if is_far:
-                analyte, unit = columns["analyte"][at], columns["canonical_unit"][at]
-                median = float(history[places[at], analyte, unit])
+        for at, (analyte, value) in enumerate(zip(columns["analyte"], columns["value"], strict=True)):
+            if analyte not in far or value < far[analyte]:
+                continue
+            unit = columns["canonical_unit"][at]
+            median = self._histories[places[at]].get((analyte, unit))
+            if median is not None and is_far(value, median):
                 reading = f"{analyte} {columns['text'][at]} {columns['unit'][at]}".rstrip()
                 question = history_question(reading, median, unit=unit)
                 self._ask((places[at], analyte, unit), question, labels[at])

@@ -1,56 +1,31 @@
-import numpy as np
-import pandas as pd
 import pytest
 
-from effluent.calc.plausible import (
-    far_above_history,
-    history_question,
-    medians,
-    reporting_above_limit,
-    reporting_question,
-)
+from effluent.calc.plausible import history_question, is_far, medians, reporting_question
+
+CADMIUM, ZINC = ("cadmium", "mg/L"), ("zinc", "mg/L")
 
 
-def readings(*rows):
-    return pd.DataFrame(rows, columns=["point", "analyte", "canonical_unit", "value"])
+def test_medians_are_those_of_each_key():
+    history = [(CADMIUM, 0.01), (ZINC, 1.0), (CADMIUM, 20.0), (CADMIUM, 0.02), (ZINC, 2.0)]
+    assert medians(history) == {CADMIUM: 0.02, ZINC: 1.5}
 
 
-HISTORY = readings(
-    ("P1", "cadmium", "mg/L", 0.01),
-    ("P1", "cadmium", "mg/L", 0.02),
-    ("P1", "cadmium", "mg/L", 20.0),
-    ("P1", "zinc", "mg/L", 0.0),
-)
+def test_without_history_there_are_no_medians():
+    assert medians([]) == {}
 
 
 @pytest.mark.parametrize(
-    ("row", "far"),
-    [
-        (("P1", "cadmium", "mg/L", 20.0), True),
-        (("P1", "cadmium", "mg/L", 19.9), False),
-        (("P2", "cadmium", "mg/L", 20.0), False),
-        (("P1", "cadmium", "mg/kg", 20.0), False),
-        (("P1", "lead", "mg/L", 20.0), False),
-        (("P1", "zinc", "mg/L", 20.0), False),
-    ],
+    ("value", "usual", "far"),
+    [(20.0, 0.02, True), (19.9, 0.02, False), (20.0, None, False), (20.0, 0.0, False)],
 )
-def test_value_a_thousand_times_its_history_is_found(row, far):
-    assert far_above_history(readings(row), medians(HISTORY)).tolist() == [far]
-
-
-def test_without_history_nothing_is_far():
-    assert far_above_history(HISTORY, medians(HISTORY[:0])).tolist() == [False] * 4
+def test_value_a_thousand_times_its_history_is_far(value, usual, far):
+    assert is_far(value, usual) is far
 
 
 def test_history_question_names_reading_and_median():
     assert history_question("20 mg/L", 0.02, unit="mg/L") == (
         "20 mg/L is a thousand times the median of this point, 0.02 mg/L, or more: is the unit right?"
     )
-
-
-def test_reporting_limit_above_the_limit_is_found():
-    found = reporting_above_limit([0.5, 0.11, 0.1, np.nan, 0.5], [0.11, 0.11, 0.11, 0.11, np.nan])
-    assert found.tolist() == [True, False, False, False, False]
 
 
 def test_reporting_question_names_both():
