@@ -11,6 +11,7 @@ from effluent.cli import option, show
 from effluent.cli.result import wanted_from, wanted_options
 from effluent.cli.value import line
 from effluent.domain import Limit, Outcome, Verdict
+from effluent.reference.analyte import called
 
 if TYPE_CHECKING:
     from effluent.services.check import Checked
@@ -72,7 +73,7 @@ def _text(checked: Checked, *, working: bool) -> list[str]:
 def _table(verdicts: tuple[Verdict, ...]) -> str:
     rows = [
         [
-            _SHOWN[one.outcome], _margin(one), ", ".join(one.samples), one.day, one.limit.analyte,
+            _SHOWN[one.outcome], _margin(one), ", ".join(one.samples), one.day, called(one.limit.analyte),
             _limit(one.limit), _reason(one),
         ]
         for one in verdicts
@@ -100,7 +101,7 @@ def _decided(checked: Checked) -> str:
     if not checked.strictest:
         return ""
     rows = [
-        [sample, _SHOWN[verdict.outcome], _limit(verdict.limit), verdict.limit.analyte]
+        [sample, _SHOWN[verdict.outcome], _limit(verdict.limit), called(verdict.limit.analyte)]
         for sample, verdict in checked.strictest.items()
     ]
     return show.table(("sample", "decided", "by limit", "analyte"), rows)
@@ -125,7 +126,7 @@ def _gaps(checked: Checked) -> str:
 
 def _named(limit: Limit) -> str:
     what = f"{limit.bound} {limit.value}, {limit.statistic}"
-    return show.text(f"{_limit(limit)}: {limit.analyte}, {limit.fraction}, {what}")
+    return show.text(f"{_limit(limit)}: {called(limit.analyte)}, {limit.fraction}, {what}")
 
 
 def _document(checked: Checked, *, as_of: str | None) -> dict[str, object]:

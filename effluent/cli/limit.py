@@ -14,6 +14,7 @@ from effluent.cli.group import TABLE, Group
 from effluent.cli.register import show_command
 from effluent.cli.value import day, line, quantity
 from effluent.domain import Limit
+from effluent.reference.analyte import called
 
 if TYPE_CHECKING:
     from effluent.reference.limit import ReferenceLimit
@@ -172,8 +173,9 @@ def _listed(found: tuple[Limit, ...]) -> str:
         return "no limit is recorded"
     rows = [
         [
-            each.code, each.point, each.analyte, each.fraction, each.bound, each.value, each.statistic,
-            each.effective_from, each.effective_to, each.authority, each.verified_by or "NOBODY YET",
+            each.code, each.point, called(each.analyte), each.fraction, each.bound, each.value,
+            each.statistic, each.effective_from, each.effective_to, each.authority,
+            each.verified_by or "NOBODY YET",
         ]
         for each in found
     ]  # fmt: skip

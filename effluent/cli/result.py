@@ -14,6 +14,7 @@ from effluent.cli import option, show
 from effluent.cli.group import TABLE, Group
 from effluent.cli.value import count, day, file, line, line_or_nothing
 from effluent.intake.layout import FIELDS
+from effluent.reference.analyte import called
 
 if TYPE_CHECKING:
     from effluent.services.importing import Imported, Order, Progress
@@ -210,8 +211,8 @@ def _listed_cells(each: Listed) -> list[object]:
     one = each.result
     late = "EXCEEDED" if each.late else ""
     return [
-        one.row, one.sample, each.drawn_on, one.analyte, one.fraction, one.text, one.unit, each.analysed_on,
-        one.report, one.replicate, late,
+        one.row, one.sample, each.drawn_on, called(one.analyte), one.fraction, one.text, one.unit,
+        each.analysed_on, one.report, one.replicate, late,
     ]  # fmt: skip
 
 

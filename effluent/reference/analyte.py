@@ -13,7 +13,7 @@ from effluent.domain.sample import Fraction
 from effluent.errors import RecordMissing, ValueRefused
 from effluent.reference.table import near_names, read
 
-__all__ = ["Analyte", "Named", "analytes", "by_key", "cas_is_valid", "find"]
+__all__ = ["Analyte", "Named", "analytes", "by_key", "called", "cas_is_valid", "find"]
 
 _CAS = re.compile(r"0*([1-9]\d{1,6})-(\d\d)-(\d)", re.ASCII)
 _DASHES = str.maketrans(dict.fromkeys("‐‑‒–—−", "-"))
@@ -89,6 +89,23 @@ def by_key(key: str) -> Analyte:
         if analyte.key == key:
             return analyte
     raise RecordMissing("analyte", key, _advice(key))
+
+
+def called(key: str) -> str:
+    """Return the name of an analyte as it stands within a sentence, or the key where the table has none.
+
+    Examples
+    --------
+    >>> called("ph"), called("cadmium"), called("nitrate as n")
+    ('pH', 'cadmium', 'nitrate (as N)')
+    """
+    name = _names_by_key().get(key, key)
+    return name[0].lower() + name[1:] if name[1:2].islower() else name
+
+
+@functools.cache
+def _names_by_key() -> dict[str, str]:
+    return {analyte.key: analyte.name for analyte in analytes()}
 
 
 def cas_is_valid(text: str) -> bool:

@@ -8,6 +8,7 @@ from itertools import chain
 from typing import NamedTuple
 
 from effluent.domain import Manifest, Outcome, Sample, Verdict
+from effluent.reference.analyte import called
 from effluent.services.check import verdicts_for
 from effluent.services.container import Contents, contents_of
 from effluent.services.shipment import shipped_containers
@@ -60,7 +61,7 @@ def adverse(cargos: Iterable[Cargo]) -> tuple[str, ...]:
     """Return the verdicts over a limit or undetermined, one sentence each."""
     return tuple(
         f"container {cargo.contents.container.code}, sample {', '.join(verdict.samples)}:"
-        f" {verdict.limit.analyte} {verdict.limit.fraction} {verdict.outcome} ({verdict.reason})"
+        f" {called(verdict.limit.analyte)} {verdict.limit.fraction} {verdict.outcome} ({verdict.reason})"
         for cargo in cargos
         for verdict in cargo.verdicts
         if verdict.outcome in _OPEN

@@ -28,6 +28,7 @@ from effluent.domain import (
 from effluent.errors import StorageFailed
 from effluent.paper.manifest import render
 from effluent.paper.sheet import Generator, LaboratoryRow, ManifestSheet, OriginRow, Party, SheetLine
+from effluent.reference.analyte import called
 from effluent.reference.code import container_code, container_codes, unit_code, unit_codes
 from effluent.services.container import Origin
 from effluent.services.moment import local_day
@@ -182,7 +183,7 @@ def _laboratory(reading: Reading, cargo: Cargo) -> Iterator[LaboratoryRow]:
         yield LaboratoryRow(
             container=cargo.contents.container.code,
             sample=", ".join(verdict.samples),
-            analyte=verdict.limit.analyte,
+            analyte=called(verdict.limit.analyte),
             fraction=verdict.limit.fraction.value,
             result="; ".join(_reported(results[row]) for row in verdict.results),
             limit=_limit(verdict.limit),

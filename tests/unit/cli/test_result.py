@@ -70,7 +70,7 @@ def test_entered_by_hand_and_listed_with_its_holding_time(
     assert capsys.readouterr().out == "result 1 is recorded\n"
     run(["result", "list", "--container", "T-1", "--since", "2026-03-02", "--analyte", "pH"])
     row = capsys.readouterr().out.splitlines()[2]
-    assert row.split() == ["1", "S-0001", "2026-03-02", "ph", "total", "7.1", "2026-03-04", "1", "EXCEEDED"]
+    assert row.split() == ["1", "S-0001", "2026-03-02", "pH", "total", "7.1", "2026-03-04", "1", "EXCEEDED"]
 
 
 def test_list_as_json(folder: Path, capsys: pytest.CaptureFixture[str]) -> None:

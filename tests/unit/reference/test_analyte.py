@@ -4,7 +4,7 @@ import pytest
 
 from effluent.domain.sample import Fraction
 from effluent.errors import RecordMissing, ValueRefused
-from effluent.reference.analyte import analytes, by_key, cas_is_valid, find
+from effluent.reference.analyte import analytes, by_key, called, cas_is_valid, find
 from effluent.reference.table import read
 
 TOTAL, RECOVERABLE, DISSOLVED, TCLP = (
@@ -144,3 +144,17 @@ def test_keys_are_unique_and_found():
 def test_unknown_key_is_missing():
     with pytest.raises(RecordMissing, match="near names are cadmium"):
         by_key("Cadmiun")
+
+
+@pytest.mark.parametrize(
+    ("key", "name"),
+    [
+        ("ph", "pH"),
+        ("cadmium", "cadmium"),
+        ("2,4-d", "2,4-D"),
+        ("nitrate as n", "nitrate (as N)"),
+        ("none", "none"),
+    ],
+)
+def test_analyte_is_called_as_it_stands_in_a_sentence(key, name):
+    assert called(key) == name

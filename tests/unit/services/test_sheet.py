@@ -116,7 +116,7 @@ def test_laboratory_summary_gives_result_limit_source_and_verdict(book: Ledger) 
             "Invented Water Board: permit 7 (invented)",
             "within",
         ),
-        ("ph", "4.2 J", "above 5.0 on any day", "Invented Water Board: permit 7 (invented), table 2", "over"),
+        ("pH", "4.2 J", "above 5.0 on any day", "Invented Water Board: permit 7 (invented), table 2", "over"),
     ]
     assert rows[0].notes == ()
     assert "limit not verified by a second person" in rows[1].notes
