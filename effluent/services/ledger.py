@@ -2,13 +2,14 @@
 
 from __future__ import annotations
 
+import os
 import re
 import secrets
 from datetime import UTC, datetime
 from typing import Any, NamedTuple
 
 from effluent.domain import Person
-from effluent.errors import AlreadyRecorded, LedgerDamaged, RecordMissing, ValueRefused
+from effluent.errors import AlreadyRecorded, FileMissing, LedgerDamaged, RecordMissing, ValueRefused
 from effluent.store.backup import appearing, copy_ledger
 from effluent.store.database import connect, finish, initialise, is_server, open_existing, shown
 from effluent.store.digest import read_contents
@@ -141,8 +142,12 @@ def restore(source: str, target: str) -> Report:
     ------
     LedgerDamaged
         If it does not verify; nothing is restored then.
+    FileMissing
+        If there is no such backup.
     """
     if not is_server(source):
+        if not os.path.exists(source):
+            raise FileMissing(source, "name the file that effluent ledger backup wrote")
         is_older(open_existing(source), source)
     reports: list[Report] = []
     copy_ledger(source, target, check=lambda made: reports.append(_need_sound(made, source)))

@@ -4,7 +4,14 @@ from pathlib import Path
 
 import pytest
 
-from effluent.errors import AlreadyRecorded, NotALedger, ServerMissing, ValueRefused, WouldOverwrite
+from effluent.errors import (
+    AlreadyRecorded,
+    FileMissing,
+    NotALedger,
+    ServerMissing,
+    ValueRefused,
+    WouldOverwrite,
+)
 from effluent.services.ledger import (
     backup,
     brought_by,
@@ -142,6 +149,13 @@ def test_backup_is_the_same_ledger(ledger: Ledger, tmp_path: Path) -> None:
     assert entry == ledger.head()
     report = restore(str(tmp_path / "copy"), str(tmp_path / "restored"))
     assert report == prove(ledger)
+
+
+def test_backup_that_is_not_there_is_named(tmp_path: Path) -> None:
+    with pytest.raises(
+        FileMissing, match="none is not there: name the file that effluent ledger backup wrote"
+    ):
+        restore(str(tmp_path / "none"), str(tmp_path / "restored"))
 
 
 @pytest.mark.parametrize(
