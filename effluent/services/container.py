@@ -32,6 +32,7 @@ __all__ = [
     "in_time",
     "move",
     "movements_of",
+    "origins_at",
     "void_movement",
     "working_capacity",
 ]
@@ -80,6 +81,15 @@ def contents_of(reading: Reading, code: str) -> Contents:
     level = sum(volumes.values(), Fraction(0))
     ordered = tuple(sorted(origins, key=lambda origin: origin.wash.performed_at))
     return Contents(container, level, working_capacity(container), ordered, own)
+
+
+def origins_at(
+    reading: Reading, code: str, moments: Sequence[datetime]
+) -> tuple[Mapping[str, Fraction], ...]:
+    """Return for each moment the litres of each wash that a container held; what moved just then counts."""
+    flows = flows_of(_connected(reading, {code}).values())
+    held = [mixing.contents(flow for flow in flows if flow.at <= moment) for moment in moments]
+    return tuple({wash: litres for wash, litres in each.get(code, {}).items() if litres} for each in held)
 
 
 def amend(ledger: Ledger, code: str, changes: Mapping[str, object], *, by: str, reason: str) -> str:
