@@ -7,11 +7,13 @@ from dataclasses import dataclass
 from datetime import date
 from fractions import Fraction as Rational
 from functools import lru_cache
-
-import pandas as pd
+from typing import TYPE_CHECKING
 
 from effluent.calc.units import KINDS, convert
 from effluent.domain import Fraction, Qualifier, Quantity, Result, exact
+
+if TYPE_CHECKING:
+    import pandas as pd
 
 __all__ = ["Reading", "exact_value", "frame"]
 
@@ -134,6 +136,8 @@ def frame(readings: Sequence[Reading]) -> pd.DataFrame:
     -----
     A change of form only; no source needed.
     """
+    import pandas as pd  # its loading is slow, and who reads results in does not need it
+
     columns: dict[str, object] = {
         name: pd.Categorical([str(getattr(reading, name)) for reading in readings]) for name in _COLUMNS
     }
