@@ -118,6 +118,7 @@ def _gaps(checked: Checked) -> str:
     lines = [
         *([f"NOT SAMPLED: {show.text(checked.unsampled)}"] if checked.unsampled else ()),
         *(f"no reading: {each.water}: {_named(each.limit)}" for each in checked.without_reading),
+        *(f"no average: {each.water}: {_named(each.limit)}: {each.why}" for each in checked.unaveraged),
         *(f"not computed by this version: {_named(limit)}" for limit in checked.not_computed),
         *(f"no verdict on sample {show.text(sample)}" for sample in checked.without_verdict),
     ]
@@ -138,6 +139,9 @@ def _document(checked: Checked, *, as_of: str | None) -> dict[str, object]:
             for sample, verdict in checked.strictest.items()
         },
         "without_reading": [{"water": each.water, "limit": each.limit} for each in checked.without_reading],
+        "unaveraged": [
+            {"water": each.water, "limit": each.limit, "why": each.why} for each in checked.unaveraged
+        ],
         "not_computed": checked.not_computed,
         "without_verdict": checked.without_verdict,
         "unsampled": checked.unsampled,

@@ -5,18 +5,19 @@ from __future__ import annotations
 from collections.abc import Iterable, Mapping, Sequence
 from typing import NamedTuple
 
-from effluent.calc.reading import Reading as LaboratoryReading
+from effluent.calc.average_verdict import is_average
 from effluent.calc.rule import in_force
 from effluent.calc.verdict import is_single, judge, strictest, without_reading
 from effluent.domain import Limit, Sample, Verdict
+from effluent.services.averaging import Averaging, Unaveraged, averaging
 from effluent.services.unsampled import unsampled
 from effluent.services.wanted import Wanted, wanted_waters
-from effluent.services.water import Water, waters
+from effluent.services.water import Water, readings_of, waters
 from effluent.settings import CAUTION
 from effluent.store.ledger import Ledger
 from effluent.store.reading import Reading
 
-__all__ = ["Checked", "Unread", "Wanted", "check", "container_verdicts", "verdicts_for"]
+__all__ = ["Checked", "Unaveraged", "Unread", "Wanted", "check", "container_verdicts", "verdicts_for"]
 
 
 class Unread(NamedTuple):
@@ -30,8 +31,9 @@ class Checked(NamedTuple):
     """What the limits of the place say.
 
     ``strictest`` has for each sample the verdict that decides; ``without_verdict`` the samples about
-    which nothing can be said, because no limit applies or nothing was read; ``unsampled`` why no sample
-    speaks for what the container asked about holds now.
+    which nothing can be said, because no limit applies or nothing was read; ``unaveraged`` the limits of
+    averages that give no verdict, and why; ``unsampled`` why no sample speaks for what the container asked
+    about holds now. A verdict on an average counts for every sample that has a part in it.
     """
 
     verdicts: tuple[Verdict, ...]
@@ -39,6 +41,7 @@ class Checked(NamedTuple):
     without_reading: tuple[Unread, ...]
     not_computed: tuple[Limit, ...]
     without_verdict: tuple[str, ...]
+    unaveraged: tuple[Unaveraged, ...] = ()
     unsampled: str = ""
     caution: str = CAUTION
 
@@ -85,7 +88,8 @@ def verdicts_for(
 
     A sample drawn at a point is held against the limits of that point; one of a container or a wash
     against those of all points of its site, or only of `points`. Limits that are not in force on the
-    sample's day, or not computed by this version, give no verdict.
+    sample's day, or not computed by this version, give no verdict. An average has all samples of its point
+    and window in it, also those that are not among these.
     """
     judged = [_Judged.of(reading, water) for water in waters(reading, samples, points=points)]
     return _in_order(judged)
@@ -100,21 +104,28 @@ class _Judged(NamedTuple):
     """One water with its verdicts, and the limits that gave none."""
 
     water: Water
-    verdicts: tuple[Verdict, ...]
+    single: tuple[Verdict, ...]
     unread: tuple[Limit, ...]
     not_computed: tuple[Limit, ...]
+    averaging: Averaging
 
     @classmethod
     def of(cls, reading: Reading, water: Water) -> _Judged:
         limits = _limits(reading, water)
-        computed = [limit for limit in limits if is_single(limit)]
-        readings = _readings(reading, water)
+        single = [limit for limit in limits if is_single(limit)]
+        averaged = averaging(reading, water, [limit for limit in limits if is_average(limit)])
+        readings = readings_of(reading, water)
         return cls(
-            water,
-            judge(readings, computed),
-            without_reading(readings, computed),
-            tuple(limit for limit in limits if not is_single(limit)),
+            water=water,
+            single=judge(readings, single),
+            unread=(*without_reading(readings, single), *averaged.unread),
+            not_computed=tuple(one for one in limits if not (is_single(one) or is_average(one))),
+            averaging=averaged,
         )
+
+    @property
+    def verdicts(self) -> tuple[Verdict, ...]:
+        return (*self.single, *self.averaging.verdicts)
 
 
 def _limits(reading: Reading, water: Water) -> list[Limit]:
@@ -124,17 +135,6 @@ def _limits(reading: Reading, water: Water) -> list[Limit]:
     return [limit for limit in found if any(in_force(limit, day) for day in days)]
 
 
-def _readings(reading: Reading, water: Water) -> list[LaboratoryReading]:
-    samples = {sample.code: sample for sample in water.samples}
-    days = {code: water.day(sample) for code, sample in samples.items()}
-    return [
-        LaboratoryReading.of(
-            result, day=days[result.sample], late=water.is_late(samples[result.sample], result)
-        )
-        for result in reading.results(samples=samples)
-    ]
-
-
 def _in_order(judged: Iterable[_Judged]) -> tuple[Verdict, ...]:
     found = [verdict for each in judged for verdict in each.verdicts]
     return tuple(sorted(found, key=lambda verdict: (verdict.day, verdict.samples)))
@@ -142,8 +142,9 @@ def _in_order(judged: Iterable[_Judged]) -> tuple[Verdict, ...]:
 
 def _checked(judged: Sequence[_Judged]) -> Checked:
     verdicts = _in_order(judged)
-    deciding = strictest(verdicts)
-    silent = [s.code for each in judged for s in each.water.samples if s.code not in deciding]
+    asked = {sample.code: None for each in judged for sample in each.water.samples}
+    deciding = {code: verdict for code, verdict in strictest(verdicts).items() if code in asked}
+    silent = [code for code in asked if code not in deciding]
     not_computed = {limit.code: limit for each in judged for limit in each.not_computed}
     return Checked(
         verdicts=verdicts,
@@ -151,4 +152,5 @@ def _checked(judged: Sequence[_Judged]) -> Checked:
         without_reading=tuple(Unread(each.water.label, limit) for each in judged for limit in each.unread),
         not_computed=tuple(not_computed.values()),
         without_verdict=tuple(silent),
+        unaveraged=tuple(dict.fromkeys(one for each in judged for one in each.averaging.unaveraged)),
     )

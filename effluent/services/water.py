@@ -8,11 +8,12 @@ from datetime import date
 from typing import Any
 from zoneinfo import ZoneInfo
 
+from effluent.calc.reading import Reading as LaboratoryReading
 from effluent.domain import Result, Sample
 from effluent.reference.holding import clock_start, deadline, holding
 from effluent.store.reading import Reading
 
-__all__ = ["Water", "site_of", "waters"]
+__all__ = ["Water", "readings_of", "site_of", "waters"]
 
 _NO_ZONE = "UTC"
 
@@ -31,6 +32,12 @@ class Water:
     zone: ZoneInfo
     points: tuple[str, ...]
 
+    @property
+    def point(self) -> str | None:
+        """The discharge point the samples were drawn at; `None` for caught water."""
+        first = self.samples[0]
+        return first.point if first.container is None and first.wash is None else None
+
     def day(self, sample: Sample) -> date:
         """Return the local day a sample counts for: that on which drawing it began."""
         return sample.started_at.astimezone(self.zone).date()
@@ -41,6 +48,18 @@ class Water:
         if hold is None or result.analysed_at is None:
             return False
         return result.analysed_at > deadline(clock_start(sample).astimezone(self.zone), hold)
+
+
+def readings_of(reading: Reading, water: Water) -> list[LaboratoryReading]:
+    """Return what the laboratory read in the samples of a water, each with the day it counts for."""
+    samples = {sample.code: sample for sample in water.samples}
+    days = {code: water.day(sample) for code, sample in samples.items()}
+    return [
+        LaboratoryReading.of(
+            result, day=days[result.sample], late=water.is_late(samples[result.sample], result)
+        )
+        for result in reading.results(samples=samples)
+    ]
 
 
 def waters(

@@ -52,11 +52,13 @@ def test_nothing_to_judge_says_so(book: Ledger, capsys: pytest.CaptureFixture[st
     sample = add_sample(book)
     unread = add_limit(book, "SEW", "lead", "0.4 mg/L")
     month = add_limit(book, "SEW", "zinc", "2 mg/L", statistic=Statistic.MONTH)
+    mass = add_limit(book, "SEW", "zinc", "2 kg/d", statistic=Statistic.MASS_DAY)
     assert run(["check", "--sample", sample]) == 1
     said = capsys.readouterr().out.splitlines()
     assert said[0] == "nothing to judge: no reading meets a limit in force"
     assert f"no reading: container T-1: {unread} at SEW: lead, total, maximum 0.4 mg/L, instantaneous" in said
-    assert any(line.startswith(f"not computed by this version: {month}") for line in said)
+    assert any(line.startswith(f"not computed by this version: {mass}") for line in said)
+    assert any(line.startswith(f"no average: caught water: {month} at SEW: zinc, total") for line in said)
     assert f"no verdict on sample {sample}" in said
 
 
@@ -67,6 +69,24 @@ def test_the_working_is_line_by_line(book: Ledger, capsys: pytest.CaptureFixture
     said = capsys.readouterr().out.splitlines()
     assert "  conversion: 120 ug/L x 0.001 = 0.12 mg/L" in said
     assert "  comparison: 0.12 > 0.11 mg/L is true" in said
+
+
+def test_an_average_shows_its_sums_and_its_verdict(book: Ledger, capsys: pytest.CaptureFixture[str]) -> None:
+    for text in ("0.05", "0.09"):
+        add_result(book, add_sample(book, point="SEW"), "cadmium", text, "mg/L")
+    add_limit(book, "SEW", "cadmium", "0.07 mg/L", statistic=Statistic.MONTH)
+    assert run(["check", "--working"]) == 0
+    said = capsys.readouterr().out
+    assert "  daily value of 2026-03-02: (0.05 + 0.09) / 2 = 0.07 mg/L\n" in said
+    assert said.splitlines()[2].startswith("within   0.0%    S-0001, S-0002  2026-03-31")
+
+
+def test_json_names_the_average_that_gave_none(book: Ledger, capsys: pytest.CaptureFixture[str]) -> None:
+    add_sample(book)
+    code = add_limit(book, "SEW", "zinc", "2 mg/L", statistic=Statistic.YEAR)
+    run(["check", "--json"])
+    (one,) = json.loads(capsys.readouterr().out)["unaveraged"]
+    assert (one["water"], one["limit"]["code"], bool(one["why"])) == ("caught water", code, True)
 
 
 def test_json_holds_verdicts_gaps_and_caution(book: Ledger, capsys: pytest.CaptureFixture[str]) -> None:
