@@ -82,7 +82,10 @@ def _complain(message: str) -> None:
     """Print what went wrong; nothing in it steers the terminal or floods it."""
     from effluent.cli.text import clip, printable
 
-    click.echo("\n".join(clip(printable(line)) for line in message.split("\n")), err=True)
+    try:
+        click.echo("\n".join(clip(printable(line)) for line in message.split("\n")), err=True)
+    except OSError:  # nobody can read it any more; the exit status still says it
+        _close(sys.stderr)
 
 
 def _output_failed(error: OSError) -> int:

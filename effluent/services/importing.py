@@ -14,6 +14,7 @@ from effluent.errors import AlreadyRecorded, FileMissing, StorageFailed, ValueRe
 from effluent.intake.explain import Explanation
 from effluent.intake.explain import explain as explain_file
 from effluent.intake.layout import PLAIN, Layout
+from effluent.intake.relay import chunks_ahead
 from effluent.intake.result import ResultChunk, ResultReader
 from effluent.services.delivery import Batch, batches
 from effluent.services.receiving import Receiving
@@ -92,12 +93,15 @@ def import_files(
     """
     layout = _layout(order)
     layout_digest = _digest(order.layout) if order.layout else ""
+    before = [_state(path) for path in order.paths]
     records = [_record(path, layout_digest) for path in order.paths]
+    _refuse_repeated(records)
     names = ", ".join(dict.fromkeys(path.name for path in order.paths))
 
     def job(writing: Writing) -> Imported:
         run = _Run(writing, order, layout, progress or _silent)
         run.read(records)
+        _refuse_changed(order.paths, before)
         run.receiving.finish(names, accept=accept)
         if not run.receiving.count:
             raise ValueRefused("laboratory file", names, "it holds no results; nothing was recorded")
@@ -166,7 +170,7 @@ class _Run:
         return code
 
     def _chunks(self, reader: ResultReader) -> Iterator[ResultChunk]:
-        for chunk in reader.chunks():
+        for chunk in chunks_ahead(reader):
             self.skipped += chunk.skipped
             self.progress(reader.table.path.name, chunk.share)
             yield chunk
@@ -198,9 +202,36 @@ def _zone(reading: Reading, path: Path, layout: Layout, given: str) -> str:
     return "UTC"
 
 
+def _refuse_repeated(records: Sequence[File]) -> None:
+    names: dict[str, str] = {}
+    for record in records:
+        if record.sha256 in names:
+            same = f"it is {names[record.sha256]} once more, byte for byte; leave one of them out"
+            raise ValueRefused("laboratory file", record.name, same)
+        names[record.sha256] = record.name
+
+
+def _state(path: Path) -> tuple[int, int, int] | None:
+    """Return what changes with a file; nothing if it is not there."""
+    try:
+        found = path.stat()
+    except OSError:
+        return None
+    return found.st_ino, found.st_size, found.st_mtime_ns
+
+
+def _refuse_changed(paths: Sequence[Path], before: Sequence[object]) -> None:
+    """Refuse a file that was written to meanwhile: its digest would not be that of what was read."""
+    for path, state in zip(paths, before, strict=True):
+        if _state(path) != state:
+            remedy = "it changed while it was read; wait until it is whole, and import it again"
+            raise ValueRefused("laboratory file", path.name, remedy)
+
+
 def _record(path: Path, layout_digest: str) -> File:
     if not os.path.isfile(path):
-        raise FileMissing(path, "name the laboratory's file")
+        what = "what is there is no file; " if os.path.exists(path) else ""
+        raise FileMissing(path, f"{what}name the laboratory's file")
     return File(name=path.name, sha256=_digest(path), size=path.stat().st_size, layout=layout_digest)
 
 

@@ -134,6 +134,14 @@ def test_terminal_of_few_characters_is_no_obstacle() -> None:
     assert ran.stderr.startswith(b"E102: unit '\\u540d' is not known")
 
 
+def test_complaint_that_cannot_be_written_keeps_its_exit_status() -> None:
+    if not os.path.exists("/dev/full"):
+        pytest.skip("this system has no device that is always full")
+    with open("/dev/full", "wb") as full:
+        assert effluent("nothing", stderr=full).returncode == 2
+        assert effluent("--help", stdout=full, stderr=full).returncode == 5
+
+
 def test_file_of_bad_rows_is_named_and_stays_readable(
     monkeypatch: pytest.MonkeyPatch, capsys: pytest.CaptureFixture[str]
 ) -> None:

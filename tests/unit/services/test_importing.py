@@ -1,5 +1,6 @@
 from __future__ import annotations
 
+import os
 from pathlib import Path
 
 import pytest
@@ -98,6 +99,33 @@ def test_a_mapping_file_is_part_of_the_record(ledger_place: str, tmp_path: Path)
 def test_a_file_that_is_not_there_is_named(ledger_place: str, tmp_path: Path) -> None:
     with world(ledger_place) as book, pytest.raises(FileMissing, match=r"none\.csv"):
         import_files(book, Order(paths=[tmp_path / "none.csv"]), by="RS")
+
+
+def test_a_folder_is_not_the_laboratory_s_file(ledger_place: str, tmp_path: Path) -> None:
+    with world(ledger_place) as book, pytest.raises(FileMissing, match="what is there is no file"):
+        import_files(book, Order(paths=[tmp_path]), by="RS")
+
+
+def test_a_file_named_twice_is_refused(ledger_place: str, tmp_path: Path) -> None:
+    with world(ledger_place) as book:
+        path = lab_file(tmp_path, [f"{add_sample(book)},Zn,total,1,mg/L"])
+        copy = tmp_path / "copy.csv"
+        copy.write_bytes(path.read_bytes())
+        with pytest.raises(ValueRefused, match=f"copy.csv.*it is {path.name} once more"):
+            import_files(book, Order(paths=[path, copy]), by="RS")
+
+
+def test_a_file_that_changes_while_it_is_read_is_refused(ledger_place: str, tmp_path: Path) -> None:
+    with world(ledger_place) as book:
+        path = lab_file(tmp_path, [f"{add_sample(book)},Zn,total,1,mg/L"])
+        head = book.head()
+
+        def touch(_name: str, _share: float) -> None:
+            os.utime(path, (1, 1))
+
+        with pytest.raises(ValueRefused, match="it changed while it was read"):
+            import_files(book, Order(paths=[path]), by="RS", progress=touch)
+        assert book.head() == head
 
 
 def test_an_unknown_sample_by_hand_is_refused_whatever_its_zone(ledger_place: str) -> None:
