@@ -12,7 +12,7 @@ import click
 
 from effluent.cli import option, show
 from effluent.cli.group import TABLE, Group
-from effluent.cli.value import count, day, file, line, line_or_nothing
+from effluent.cli.value import count, day, file, in_order, line, line_or_nothing
 from effluent.intake.layout import FIELDS
 from effluent.reference.analyte import called
 
@@ -48,7 +48,9 @@ def wanted_from(given: dict[str, Any]) -> Wanted:
     """Take the values of `wanted_options` out of what was given."""
     from effluent.services.wanted import Wanted
 
-    return Wanted(**{name: given.pop(name) for name in Wanted._fields})
+    wanted = Wanted(**{name: given.pop(name) for name in Wanted._fields})
+    in_order(wanted.since, wanted.until)
+    return wanted
 
 
 @result.command("import")

@@ -15,7 +15,18 @@ from effluent.cli.text import clip, has_hidden, printable
 from effluent.domain import Quantity
 from effluent.errors import ValueRefused
 
-__all__ = ["count", "day", "file", "instant", "line", "line_or_nothing", "quantity", "short", "word"]
+__all__ = [
+    "count",
+    "day",
+    "file",
+    "in_order",
+    "instant",
+    "line",
+    "line_or_nothing",
+    "quantity",
+    "short",
+    "word",
+]
 
 _LONGEST_TEXT, _LONGEST_VALUE = 2000, 100
 _DAY = r"[0-9]{4}-[0-9]{2}-[0-9]{2}"
@@ -138,6 +149,18 @@ def _within_years(moment: _Day) -> _Day:
     if not _FIRST_YEAR <= moment.year <= _LAST_YEAR:
         raise ValueError(moment)
     return moment
+
+
+def in_order(since: date | None, until: date | None) -> None:
+    """Refuse a last day before the first.
+
+    Raises
+    ------
+    click.UsageError
+        If it is.
+    """
+    if since and until and until < since:
+        raise click.UsageError(f"--until {until} lies before --since {since}; exchange them")
 
 
 def count(written: str) -> int:

@@ -10,7 +10,7 @@ import click
 from effluent.cli import option, show
 from effluent.cli.field import build, changes, fields_as_options
 from effluent.cli.register import list_command, register_group, show_command
-from effluent.cli.value import day, line, quantity
+from effluent.cli.value import day, in_order, line, quantity
 from effluent.domain import Quantity, Wash
 
 if TYPE_CHECKING:
@@ -120,6 +120,7 @@ def balance(*, ledger: str, as_json: bool, **asked: Any) -> None:
     from effluent.services import wash as washes
     from effluent.wiring import open_ledger
 
+    in_order(asked["since"], asked["until"])
     with open_ledger(ledger) as book:
         found = washes.balances(book, **asked)
     totals = washes.totals(found)

@@ -96,6 +96,14 @@ def test_day_of_another_form_is_refused(written: str) -> None:
         value.day(written)
 
 
+def test_last_day_before_the_first_is_refused() -> None:
+    first, last = date(2026, 3, 1), date(2026, 3, 2)
+    for since, until in ((None, first), (first, None), (first, first), (first, last)):
+        value.in_order(since, until)
+    with pytest.raises(click.UsageError, match="2026-03-01 lies before --since 2026-03-02"):
+        value.in_order(last, first)
+
+
 def test_count_is_whole() -> None:
     assert value.count("0") == 0
     assert value.count("007") == 7
