@@ -183,12 +183,13 @@ def _averaged(
 
 
 def _span(figure: Figure, used: Iterable[Reading]) -> Span:
-    signs = {reading.qualifier for reading in used}
+    known = tuple(used)
     return Span(
         low=figure.low,
         high=figure.high,
-        low_open=Qualifier.ABOVE in signs,
-        high_open=Qualifier.BELOW in signs,
+        low_open=any(reading.qualifier == Qualifier.ABOVE for reading in known),
+        # Behind <0 nothing is hidden: the truth is 0, and the end belongs to the span.
+        high_open=any(reading.qualifier == Qualifier.BELOW and reading.exact > 0 for reading in known),
     )
 
 

@@ -4,7 +4,7 @@ import pytest
 
 from effluent.calc.averaged import averages, is_usable, observed, rule_of
 from effluent.calc.observation import Substitution
-from effluent.domain import Fraction, NonDetectRule, Qualifier
+from effluent.domain import Bound, Fraction, NonDetectRule, Outcome, Qualifier
 from effluent.errors import ValueRefused
 from tests.unit.calc.test_average_verdict import limit, reading
 
@@ -29,6 +29,11 @@ def test_a_mean_of_ph_is_refused():
 def test_the_bounds_are_never_mistaken_for_the_rule():
     (one,) = averages([reading(1, 1, "<0.1 mg/L")], limit())
     assert (one.span.low, one.span.high * 10, one.ruled, one.deciding, one.margin) == (0, 1, None, None, None)
+
+
+def test_behind_a_non_detect_of_nothing_nothing_is_hidden():
+    (one,) = averages([reading(1, 1, "<0 mg/L"), reading(2, 2, "0.14 mg/L")], limit(bound=Bound.MINIMUM))
+    assert (one.span.is_exact, one.span.high_open, one.outcome) == (True, False, Outcome.WITHIN)
 
 
 def test_readings_of_another_fraction_are_not_usable():
