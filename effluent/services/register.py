@@ -33,6 +33,7 @@ __all__ = [
 ]
 
 
+_ABSOLUTE_ZERO = Fraction("-273.15")  # degC
 _LARGEST = 10**12
 
 
@@ -150,6 +151,8 @@ def check_quantities(value: Any) -> None:
             _check_size(name, quantity, amount)
             if amount < 0 and measures not in ("temperature", "limit"):
                 raise ValueRefused(name, str(quantity), "it cannot be negative")
+            if measures == "temperature" and amount < _ABSOLUTE_ZERO:
+                raise ValueRefused(name, str(quantity), "it lies below absolute zero; check the unit")
 
 
 def _amount(name: str, quantity: Quantity, measures: str) -> Fraction:

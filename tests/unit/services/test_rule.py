@@ -8,6 +8,7 @@ import pytest
 
 from effluent.domain import MeasuredBy, RunningMode
 from effluent.errors import Questioned, ValueRefused
+from effluent.services.register import check
 from effluent.services.rule import check_trade, questions
 from effluent.services.wash import record
 from tests.washing import add_station, desalination, grit, q, recovery
@@ -98,3 +99,10 @@ def test_same_wash_twice_is_questioned(ledger_place: str) -> None:
         ):
             record(book, desalination(task="card 1"), {}, by="AM")
         assert record(book, desalination(), {}, by="AM", accept="two washes").code == "W-0002"
+
+
+@pytest.mark.parametrize("air", ["-300 degC", "-460 degF", "-1 K"])
+def test_air_below_absolute_zero_is_refused(air: str) -> None:
+    with pytest.raises(ValueRefused, match=r"outside air.*below absolute zero"):
+        check(desalination(outside_air=q(air)))
+    check(desalination(outside_air=q("-40 degF")))
