@@ -219,7 +219,7 @@ def _laboratory(rows: Sequence[LaboratoryRow], width: float) -> Flowable:
         "Container",
         "Sample",
         "Analyte and fraction",
-        "Result as reported",
+        "Result as reported, laboratory",
         "Limit, authority and document",
         "Verdict",
         "Notes",
@@ -237,9 +237,9 @@ def _reading(row: LaboratoryRow) -> Row:
     notes: list[Flowable] = [words(note, SMALL) for note in row.notes] or [words("", SMALL)]
     return [
         [words(row.container, SMALL)],
-        [words(row.sample, SMALL)],
+        [words(row.sample, SMALL), words(row.drawn, NOTE)],
         [words(row.analyte, SMALL), words(row.fraction, NOTE)],
-        [words(row.result, SMALL)],
+        [words(row.result, SMALL), words(row.analysed, NOTE)],
         [words(row.limit, SMALL), words(row.source, NOTE)],
         [words(row.verdict, STRONG)],
         notes,

@@ -48,7 +48,15 @@ class SheetLine:
 
 @dataclass(frozen=True, kw_only=True)
 class LaboratoryRow:
-    """One reading against one limit; `result` is as reported, with its unit."""
+    """One reading against one limit.
+
+    Attributes
+    ----------
+    result : str
+        As reported, with its unit.
+    drawn, analysed : str
+        When the sample was drawn; who analysed it and when. Blank where nothing is recorded.
+    """
 
     container: str
     sample: str
@@ -58,6 +66,8 @@ class LaboratoryRow:
     limit: str
     source: str
     verdict: str
+    drawn: str = ""
+    analysed: str = ""
     notes: tuple[str, ...] = ()
 
 

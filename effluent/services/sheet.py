@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import os
-from collections.abc import Iterator, Mapping, Sequence
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from dataclasses import replace
 from datetime import datetime
 from fractions import Fraction
@@ -21,6 +21,7 @@ from effluent.domain import (
     ManifestState,
     Outcome,
     Result,
+    Sample,
     Site,
     Statistic,
     Verdict,
@@ -108,7 +109,7 @@ def sheet(reading: Reading, manifest: Manifest) -> ManifestSheet:
         carriers=tuple(_party(reading.value("company", code)) for code in manifest.carriers),
         facility=_party(reading.value("company", manifest.facility)),
         lines=_lines(manifest, cargos),
-        laboratory=tuple(chain.from_iterable(_laboratory(reading, cargo) for cargo in cargos)),
+        laboratory=tuple(chain.from_iterable(_laboratory(reading, cargo, site) for cargo in cargos)),
         origins=tuple(_origin(cargo, origin, site) for cargo in cargos for origin in cargo.contents.origins),
         special_handling=manifest.special_handling,
         issued_on=manifest.issued_on.isoformat() if manifest.issued_on else "",
@@ -177,20 +178,43 @@ def _together(one: SheetLine, other: SheetLine) -> SheetLine:
     )
 
 
-def _laboratory(reading: Reading, cargo: Cargo) -> Iterator[LaboratoryRow]:
+def _laboratory(reading: Reading, cargo: Cargo, site: Site) -> Iterator[LaboratoryRow]:
     results = {r.row: r for r in reading.results(samples=[sample.code for sample in cargo.samples])}
+    samples = {sample.code: sample for sample in cargo.samples}
+    names = {company.code: company.name for company in reading.values("company")}
     for verdict in cargo.verdicts:
+        analysed = [(results[row], samples[results[row].sample]) for row in verdict.results]
         yield LaboratoryRow(
             container=cargo.contents.container.code,
             sample=", ".join(verdict.samples),
+            drawn=_each(_drawn(samples[code], site) for code in verdict.samples),
             analyte=called(verdict.limit.analyte),
             fraction=verdict.limit.fraction.value,
             result="; ".join(_reported(results[row]) for row in verdict.results),
+            analysed=_each(_analysed(result, sample, site, names) for result, sample in analysed),
             limit=_limit(verdict.limit),
             source=_source(verdict.limit),
             verdict=verdict.outcome.value,
             notes=_notes(verdict, results),
         )
+
+
+def _each(texts: Iterable[str]) -> str:
+    return "; ".join(text for text in dict.fromkeys(texts) if text)
+
+
+def _drawn(sample: Sample, site: Site) -> str:
+    """Return the site's day on which a sample was drawn, or the first and the last of a composite."""
+    days = [local_day(at, site).isoformat() for at in (sample.started_at, sample.ended_at) if at]
+    return f"drawn {' to '.join(dict.fromkeys(days))}"
+
+
+def _analysed(result: Result, sample: Sample, site: Site, names: Mapping[str, str]) -> str:
+    """Return who analysed a sample and on which day of its site, as far as the records say it."""
+    laboratory = result.laboratory or sample.laboratory or ""
+    at = result.analysed_at
+    day = f"analysed {local_day(at, site)}" if at else ""
+    return ", ".join(part for part in (names.get(laboratory, laboratory), day) if part)
 
 
 def _reported(result: Result) -> str:

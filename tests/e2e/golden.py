@@ -10,6 +10,7 @@ import tempfile
 import textwrap
 from collections.abc import Iterator
 from dataclasses import replace
+from datetime import UTC, datetime
 from io import BytesIO
 from pathlib import Path
 
@@ -51,7 +52,8 @@ def shipment(book: Ledger) -> str:
     drums = [f"D-{number}" for number in range(1, 13)]
     ready(book, *drums)
     add_limit(book, "SEW", "lead", "0.5 mg/L", verified_by=None, verified_on=None)
-    add_result(book, "S-0002", "lead", "0.9", "mg/L", flag="J")
+    analysed = {"laboratory": "Invented Laboratory", "analysed_at": datetime(2026, 3, 9, 10, tzinfo=UTC)}
+    add_result(book, "S-0002", "lead", "0.9", "mg/L", flag="J", **analysed)
     lines = [
         line(
             drum,

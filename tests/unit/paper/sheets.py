@@ -54,9 +54,11 @@ def reading(number: int) -> LaboratoryRow:
     return LaboratoryRow(
         container=f"DR-{number:03d}-A",
         sample=f"S-2031-{number:04d}",
+        drawn="drawn 2031-03-05",
         analyte="Cadmium",
         fraction="total recoverable",
         result="0.0123 mg/L J",
+        analysed="Invented Laboratory, analysed 2031-03-08",
         limit="at most 0.11 mg/L, daily maximum",
         source="Invented Sewer Authority, permit IS-17, table 2",
         verdict="within",

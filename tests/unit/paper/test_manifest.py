@@ -238,6 +238,12 @@ def test_laboratory_row_shows_result_limit_source_verdict_and_notes():
         assert part in text
 
 
+def test_laboratory_row_shows_when_the_sample_was_drawn_and_who_analysed_it_when():
+    text = pages(render(sheet(1, 1)))[1]
+    assert "drawn 2031-03-05" in text
+    assert all(part in text for part in ("Invented", "Laboratory,", "analysed", "2031-03-08"))
+
+
 def test_manifest_number_that_fills_the_head_is_refused():
     with pytest.raises(ValueRefused, match="manifest number"):
         render(sheet(code="M" * 4000))

@@ -1,7 +1,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from datetime import date
+from datetime import UTC, date, datetime
 from pathlib import Path
 from typing import Any
 
@@ -120,6 +120,15 @@ def test_laboratory_summary_gives_result_limit_source_and_verdict(book: Ledger) 
     ]
     assert rows[0].notes == ()
     assert "limit not verified by a second person" in rows[1].notes
+
+
+def test_laboratory_summary_gives_the_days_of_the_site_and_the_laboratory(book: Ledger) -> None:
+    ready(book, "D-1")
+    night = datetime(2026, 7, 1, 23, 30, tzinfo=UTC)
+    add_result(book, "S-0001", "cadmium", "0.03", "mg/L", replicate=2, laboratory="HAUL", analysed_at=night)
+    first, second = worded(book, drafted(book, line("D-1"))).laboratory
+    assert (first.drawn, first.analysed) == ("drawn 2026-03-02", "")
+    assert second.analysed == "Invented Haulage, analysed 2026-07-02"
 
 
 def test_stale_sample_is_left_out_of_the_summary(book: Ledger) -> None:
