@@ -94,7 +94,7 @@ def _refusal(limit: Limit) -> str:
     try:
         refuse_mean(limit_unit(limit.value))
     except ValueRefused as refused:
-        return str(refused)
+        return str(refused.args[-1])
     return ""
 
 
