@@ -35,10 +35,11 @@ _FAILED = {Outcome.OVER, Outcome.UNDETERMINED}
 @click.option("--working", is_flag=True, help="Show the arithmetic of every verdict, line by line.")
 @option.reads
 def check(*, against: str | None, working: bool, **given: Any) -> int:
-    """Hold results against the limits in force where the water may leave.
+    """Hold results against limits and say within, near, over or undetermined.
 
-    The exit status is 0 when every verdict is within or near, and 1 when one is over or undetermined,
-    when there is nothing to judge, or when the container asked about holds water that no sample speaks for.
+    The limits are those in force where the water may leave. The exit status is 0 when every verdict is
+    within or near, and 1 when one is over or undetermined, when there is nothing to judge, or when the
+    container asked about holds water that no sample speaks for.
     """
     from effluent.services import check as service
     from effluent.wiring import open_ledger
