@@ -35,7 +35,7 @@ from effluent.services import manifest as manifests
 from effluent.store.ledger import Ledger
 from tests.e2e.wrong import SOUND, Call, commands, wrong_calls
 from tests.shipping import add_parties, line, manifest, ready
-from tests.world import NOON, NOW, add_limit, add_sample, add_wash, record, world
+from tests.world import NOON, NOW, add_limit, add_result, add_sample, add_wash, record, world
 
 _COMMANDS = dict(commands())
 _REFUSED = re.compile(r"E\d{3}: \S|Usage: effluent |Error: Option ")
@@ -90,6 +90,9 @@ def _make(folder: Path) -> None:
         _add_manifests(book)
         add_wash(book)
         add_sample(book, started_at=NOON + timedelta(hours=3))
+        for days in range(4):
+            drawn = add_sample(book, point="SEW", started_at=NOON + timedelta(days=days))
+            add_result(book, drawn, "cadmium", f"0.0{days + 1}", "mg/L")
         ledgers.backup(book, str(folder / "backup.ledger"))
     (folder / "laboratory.csv").write_text(_LABORATORY)
     (folder / "a-file").write_text("text")

@@ -83,6 +83,8 @@ SOUND = {
     "limit show": "L-0001",
     "limit reference": "",
     "check": "--sample S-0001",
+    "trend": "cadmium --point SEW",
+    "noncompliance": "--point SEW --since 2026-01-01 --until 2026-06-30",
     "manifest draft": "--site LIS --facility WORKS --carrier HAUL --emergency-contact Desk"
     " --emergency-phone '+00 555 0111' --container D-2 --description Water",
     "manifest line": "M-0001 --container D-1 --description Water",
