@@ -21,6 +21,7 @@ __all__ = [
     "MonthCounts",
     "Share",
     "Window",
+    "Windows",
     "count_violations",
     "fixed_halves",
     "rolling_quarters",
@@ -44,6 +45,13 @@ class MonthCounts(StrEnum):
 
     ONE = "one"
     EACH_DAY = "each day of the month"
+
+
+class Windows(StrEnum):
+    """Over which windows of six months a place judges."""
+
+    ROLLING_QUARTERS = "rolling quarters"
+    FIXED_HALVES = "fixed halves"
 
 
 @dataclass(frozen=True, kw_only=True)
