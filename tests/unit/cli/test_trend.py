@@ -12,7 +12,7 @@ from effluent.services.ledger import open_ledger
 from effluent.settings import CAUTION
 from effluent.store.ledger import Ledger
 from tests.washing import rinse
-from tests.world import NOON, add_result, add_sample
+from tests.world import NOON, NOW, add_result, add_sample
 
 Typed = Callable[..., tuple[int, list[str]]]
 
@@ -20,7 +20,7 @@ Typed = Callable[..., tuple[int, list[str]]]
 @pytest.fixture
 def book(tmp_path: Path, typed: Typed) -> Iterator[Ledger]:
     """The ledger that the commands answer from, open."""
-    with open_ledger(str(tmp_path / "ledger")) as book:
+    with open_ledger(str(tmp_path / "ledger"), clock=lambda: NOW) as book:
         yield book
 
 
