@@ -34,6 +34,10 @@ TABLE: dict[str, tuple[str, str]] = {
         "Hold results against limits and say within, near, over or undetermined.",
     ),
     "trend": ("effluent.cli.trend:trend", "Tell whether an analyte rises or falls over time."),
+    "noncompliance": (
+        "effluent.cli.noncompliance:noncompliance",
+        "Count what exceeds over six months, for significant noncompliance.",
+    ),
     "manifest": ("effluent.cli.manifest:manifest", "Manifests: the paper with which containers leave."),
     "person": ("effluent.cli.register:person", "People who record, sample, verify or approve."),
     "company": ("effluent.cli.register:company", "Carriers, receiving facilities and laboratories."),
