@@ -98,14 +98,15 @@ def amend(
 @wash.command("void")
 @click.argument("code", type=line)
 @option.reason_required
+@option.accept
 @option.writes
-def void(*, code: str, ledger: str, by: str, reason: str) -> None:
+def void(*, code: str, ledger: str, by: str, reason: str, accept: str | None) -> None:
     """Void a wash and its fills; both stay readable. CODE is its number."""
     from effluent.services import wash as washes
     from effluent.wiring import open_ledger
 
     with open_ledger(ledger) as book:
-        washes.void(book, code, by=by, reason=reason)
+        washes.void(book, code, by=by, reason=reason, accept=accept or "")
     show.say(f"wash {show.text(code)} is void, and what it filled")
 
 

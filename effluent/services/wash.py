@@ -13,6 +13,7 @@ from effluent.calc.units import canonical
 from effluent.domain import Movement, MovementKind, Quantity, Site, Wash
 from effluent.errors import ValueRefused
 from effluent.services.container import check_levels
+from effluent.services.drawn import drawn_with, unsettled
 from effluent.services.locality import localised
 from effluent.services.moment import local, local_day, past
 from effluent.services.question import answer
@@ -99,6 +100,12 @@ def amend(
 
     `changes` may hold ``into``, the fills as for `record`. Without it, a wash that filled one container
     fills it with what is now caught.
+
+    Raises
+    ------
+    Questioned
+        If something is implausible, or samples were drawn from water that the correction changes, and
+        nobody accepted it.
     """
     need_reason(reason, "amend")
     fields = {name: value for name, value in changes.items() if name != "into"}
@@ -107,35 +114,41 @@ def amend(
     def job(writing: Writing) -> Recorded:
         old: Wash = writing.value("wash", code)
         placed = _checked(writing, replace(old, **fields), ledger)
-        answer(writing, questions(writing, placed), accept=accept)
         before = writing.values("movement", wash=code, kind=MovementKind.FILL)
+        drawn = drawn_with(writing, code)
         wanted = _fills(placed, _fills_after(before, placed) if fills is None else fills)
         if placed != old:
             writing.amend(placed)
         made = _replace_fills(writing, before, wanted, moved=placed.site != old.site)
         if placed == old and made == before:
             raise ValueRefused("wash", code, "nothing would change; name what to change")
+        asked = (*questions(writing, placed), *unsettled(code, drawn, drawn_with(writing, code)))
+        answer(writing, asked, accept=accept)
         check_levels(writing, {fill.target for fill in {*before} ^ {*made}})
         return Recorded(code, made, balance_of(writing, placed))
 
     return ledger.write(job, by=by, action="amend wash", reason=reason)
 
 
-def void(ledger: Ledger, code: str, *, by: str, reason: str) -> None:
+def void(ledger: Ledger, code: str, *, by: str, reason: str, accept: str = "") -> None:
     """Record that a wash does not stand, and its fills with it.
 
     Raises
     ------
     StateRefused
-        If a sample rests on it.
+        If a sample of the wash itself rests on it.
+    Questioned
+        If samples were drawn from a container that held its water, and nobody accepted it.
     """
     need_reason(reason, "void")
 
     def job(writing: Writing) -> None:
         before = writing.values("movement", wash=code, kind=MovementKind.FILL)
+        drawn = drawn_with(writing, code)
         for fill in before:
             writing.void("movement", fill.code)
         writing.void("wash", code)
+        answer(writing, unsettled(code, drawn, {}), accept=accept)
         check_levels(writing, {fill.target for fill in before})
 
     ledger.write(job, by=by, action="void wash", reason=reason)

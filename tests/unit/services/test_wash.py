@@ -2,6 +2,7 @@ from __future__ import annotations
 
 from datetime import UTC, date, datetime, timedelta
 from fractions import Fraction
+from functools import partial
 from typing import Any
 
 import pytest
@@ -10,6 +11,7 @@ from effluent.calc.balance import Answer
 from effluent.domain import MeasuredBy
 from effluent.errors import (
     EffluentError,
+    Questioned,
     RecordMissing,
     StateRefused,
     UnitMismatch,
@@ -18,9 +20,10 @@ from effluent.errors import (
 )
 from effluent.services import register
 from effluent.services.container import contents
+from effluent.services.ledger import history
 from effluent.services.wash import amend, balances, record, totals, void
 from effluent.store.ledger import Ledger
-from tests.washing import add_station, desalination, held, q, recovery, rinse, withdraw
+from tests.washing import add_station, desalination, held, pour, q, recovery, rinse, withdraw
 from tests.world import NOON, NOW, add_sample, world
 
 CAUGHT = {"caught": q("48 ± 2 L"), "caught_by": MeasuredBy.LEVEL_STICK}
@@ -157,6 +160,45 @@ def test_void_wash_takes_its_fills_along(ledger_place: str) -> None:
         assert contents(book, "D-1").movements == ()
         assert register.show(book, "wash", "W-0001").voided
         assert balances(book) == ()
+
+
+@pytest.mark.parametrize("change", [{"caught": q("40 L")}, {"performed_at": NOON + timedelta(hours=3)}, None])
+def test_correction_under_a_sample_is_questioned_by_its_number(tmp_path: Any, change: Any) -> None:
+    def correct(**given: Any) -> None:
+        job = void if change is None else partial(amend, changes=change)
+        job(book, "W-0001", by="AM", reason="misread", **given)
+
+    with world(str(tmp_path / "ledger")) as book:
+        add_station(book)
+        rinse(book, "48 L", "D-1")
+        add_sample(book, container="D-1", started_at=NOON + timedelta(hours=2))
+        with pytest.raises(Questioned, match="D-1: sample S-0001 speaks for water of W-0001"):
+            correct()
+        correct(accept="drum was sampled again")
+        assert "drum was sampled again" in history(book)[-1].reason
+
+
+def test_sample_of_a_container_the_water_was_poured_into_is_asked_about(ledger_place: str) -> None:
+    with world(ledger_place) as book:
+        add_station(book)
+        rinse(book, "48 L", "D-1")
+        rinse(book, "40 L", "D-1", hours=1)
+        pour(book, "20 L", "D-1", "D-2", hours=2)
+        add_sample(book, container="D-2", started_at=NOON + timedelta(hours=3))
+        add_sample(book, container="D-2", started_at=NOON + timedelta(hours=1))
+        with pytest.raises(Questioned, match="D-2: sample S-0001 speaks"):
+            void(book, "W-0001", by="AM", reason="logged twice")
+
+
+def test_correction_that_leaves_sampled_water_as_it_was_asks_nothing(ledger_place: str) -> None:
+    with world(ledger_place) as book:
+        add_station(book)
+        rinse(book, "48 L", "D-1")
+        add_sample(book, container="D-1", started_at=NOON + timedelta(hours=2))
+        rinse(book, "40 L", "D-1", hours=3)
+        amend(book, "W-0001", {"performed_at": NOON + timedelta(minutes=5)}, by="AM", reason="slip")
+        void(book, "W-0002", by="AM", reason="logged twice")
+        assert held(book, "D-1") == {"W-0001": "48"}
 
 
 def test_wash_whose_water_moved_on_or_was_sampled_cannot_be_voided(ledger_place: str) -> None:
