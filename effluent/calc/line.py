@@ -9,6 +9,7 @@ from fractions import Fraction as Rational
 from effluent.calc.reading import Reading
 from effluent.calc.units import KINDS, conversion, decimal_text
 from effluent.domain import Bound, BrokenBy, Limit, Quantity, Rounding
+from effluent.reference.analyte import called
 
 __all__ = [
     "cautions",
@@ -52,7 +53,7 @@ def reading_line(reading: Reading) -> str:
     reported = f", reported as {reading.text!r}" if reading.text not in ("", str(reading)) else ""
     flag = f", flag {reading.flag}" if reading.flag else ""
     return (
-        f"reading: result {reading.row}, sample {reading.sample}, {reading.day}: {reading.analyte}, "
+        f"reading: result {reading.row}, sample {reading.sample}, {reading.day}: {called(reading.analyte)}, "
         f"{reading.fraction}: {reading}{reported}{flag}"
     )
 
@@ -97,7 +98,7 @@ def limit_lines(limit: Limit, compared: str = "reading") -> tuple[str, str]:
     where = f", {limit.written_at}" if limit.written_at else ""
     checked = f"verified by {limit.verified_by}" if limit.verified_by else "not verified by a second person"
     return (
-        f"limit {limit.code}: {limit.bound} {limit.value}, {limit.statistic}, {limit.analyte}, "
+        f"limit {limit.code}: {limit.bound} {limit.value}, {limit.statistic}, {called(limit.analyte)}, "
         f"{limit.fraction}; broken by {article} {compared} {word} it; {compared}s compared {_how(limit)}",
         f"source: {limit.authority}: {limit.document}{where}; in force from {limit.effective_from}{until}; "
         f"entered by {limit.entered_by}, {checked}",

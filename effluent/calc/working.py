@@ -132,9 +132,7 @@ def _not_shown(finding: Finding) -> str:
     reading, limit = finding.reading, finding.limit
     below = finding.basis == Basis.BELOW and reading.fraction == limit.fraction
     if below and limit.bound == Bound.MAXIMUM:
-        own = reading.reporting_limit in ("", reading.number)
-        bound = f"{'reporting limit' if own else 'bound'} {reading.number} {reading.unit}".rstrip()
-        return f"{bound} lies above the {_named(limit)}: the reading proves nothing"
+        return f"{_subject(finding)} proves nothing: the limit is {limit.value}"
     what = f"the truth is {forbidden(limit)[0]} the {_named(limit)}"
     sentence = f"{_subject(finding)}: whether {what} is not shown"
     if {reading.fraction, limit.fraction} == {Fraction.TOTAL, Fraction.TOTAL_RECOVERABLE}:

@@ -149,7 +149,7 @@ REASONS = [
     (
         Fraction.TOTAL,
         "<0.5 mg/L",
-        "reporting limit 0.5 mg/L lies above the limit 0.11 mg/L: the reading proves nothing",
+        "less than 0.5 mg/L proves nothing: the limit is 0.11 mg/L",
     ),
     (
         Fraction.TCLP,
@@ -189,9 +189,15 @@ def test_undetermined_says_why(fraction, written, why):
     assert verdict.reason == why
 
 
-def test_bound_that_is_not_the_reporting_limit_is_not_called_so():
-    (verdict,) = judge([reading("<0.5 mg/L", reporting_limit="0.05")], [limit("0.11 mg/L")])
-    assert verdict.reason.startswith("bound 0.5 mg/L lies above the limit 0.11 mg/L")
+def test_bound_above_the_limit_keeps_the_laboratorys_unit():
+    (verdict,) = judge([reading("<500 ug/L", reporting_limit="0.05")], [limit("0.43 mg/L")])
+    assert verdict.reason == "less than 500 ug/L proves nothing: the limit is 0.43 mg/L"
+
+
+def test_working_names_the_analyte_as_a_reader_knows_it():
+    (verdict,) = judge([reading("7.2", analyte="ph")], [limit("5.0", analyte="ph", bound=Bound.MINIMUM)])
+    assert ": pH, total: 7.2" in verdict.working[0]
+    assert ", pH, total; broken by" in line("limit", verdict.working)
 
 
 def test_bound_on_the_open_side_of_a_minimum_is_not_shown():
