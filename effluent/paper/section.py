@@ -229,7 +229,7 @@ def _laboratory(rows: Sequence[LaboratoryRow], width: float) -> Flowable:
         "undetermined (cannot be shown either way)."
     )
     cells = [_reading(row) for row in rows]
-    widths = _shares(width, 11, 13, 14, 13, 22, 12, 15)
+    widths = _shares(width, 10, 13, 12, 21, 22, 12, 10)
     return listing("Annex A. Laboratory summary", columns, cells, widths, note=note)
 
 
