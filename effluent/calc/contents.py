@@ -2,15 +2,15 @@
 
 from __future__ import annotations
 
-from collections import defaultdict
-from collections.abc import Iterable, Iterator, Mapping
+from collections import defaultdict, deque
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
 from datetime import datetime
 from fractions import Fraction
 
 from effluent.errors import ValueRefused, VolumeRefused
 
-__all__ = ["Flow", "Violation", "contents", "first_violation", "levels"]
+__all__ = ["Flow", "Violation", "contents", "contents_at", "first_violation", "levels"]
 
 _ZERO = Fraction(0)
 
@@ -138,6 +138,44 @@ def contents(flows: Iterable[Flow]) -> dict[str, dict[str, Fraction]]:
     for flow in _in_time(flows):
         _apply(flow, mixes)
     return {name: mix.portion(mix.level) for name, mix in mixes.items()}
+
+
+def contents_at(
+    flows: Iterable[Flow], container: str, moments: Sequence[datetime]
+) -> tuple[dict[str, Fraction], ...]:
+    """Return how much water of each origin one container held at each of several moments.
+
+    Parameters
+    ----------
+    flows : iterable of Flow
+        In any order, those of every container whose water could have reached this one.
+    container : str
+        The one asked about.
+    moments : sequence of datetime, length n
+        In any order; a flow of just that moment counts.
+
+    Returns
+    -------
+    tuple of dict of str to fractions.Fraction, length n
+        Origin to litres, exact, in the order of `moments`; empty where the container held nothing.
+
+    Raises
+    ------
+    VolumeRefused
+        If a container would run below empty on the way.
+
+    Notes
+    -----
+    As `contents`; the flows are gone through once.
+    """
+    mixes: dict[str, _Mix] = defaultdict(_Mix)
+    to_come = deque(_in_time(flows))
+    found = {}
+    for moment in sorted({*moments}):
+        while to_come and to_come[0].at <= moment:
+            _apply(to_come.popleft(), mixes)
+        found[moment] = mixes[container].portion(mixes[container].level)
+    return tuple(found[moment] for moment in moments)
 
 
 def first_violation(flows: Iterable[Flow], capacities: Mapping[str, Fraction]) -> Violation | None:

@@ -88,8 +88,8 @@ def origins_at(
 ) -> tuple[Mapping[str, Fraction], ...]:
     """Return for each moment the litres of each wash that a container held; what moved just then counts."""
     flows = flows_of(_connected(reading, {code}).values())
-    held = [mixing.contents(flow for flow in flows if flow.at <= moment) for moment in moments]
-    return tuple({wash: litres for wash, litres in each.get(code, {}).items() if litres} for each in held)
+    held = mixing.contents_at(flows, code, moments)
+    return tuple({wash: litres for wash, litres in each.items() if litres} for each in held)
 
 
 def amend(ledger: Ledger, code: str, changes: Mapping[str, object], *, by: str, reason: str) -> str:

@@ -4,7 +4,7 @@ from fractions import Fraction
 from hypothesis import given
 from hypothesis import strategies as st
 
-from effluent.calc.contents import Flow, contents, first_violation, levels
+from effluent.calc.contents import Flow, contents, contents_at, first_violation, levels
 
 START = datetime(2026, 1, 1, tzinfo=UTC)
 CONTAINERS = ("A", "B", "C")
@@ -83,3 +83,14 @@ def test_capacity_is_broken_exactly_when_some_prefix_is_above_it(flows, capacity
     peaks = [levels(flows[: n + 1]).get("A", 0) for n in range(len(flows))]
     found = first_violation(flows, {"A": Fraction(capacity)})
     assert (found is not None) == any(peak > capacity for peak in peaks)
+
+
+@given(possible_flows(), st.lists(st.integers(-1, 16), max_size=4), st.sampled_from(CONTAINERS))
+def test_contents_at_a_moment_are_those_of_the_flows_up_to_it(flows, hours, container):
+    moments = [START + timedelta(hours=hour) for hour in hours]
+    told = [
+        without_zeros({container: naive([f for f in flows if f.at <= moment])[container]})
+        for moment in moments
+    ]
+    found = contents_at(reversed(flows), container, moments)
+    assert [without_zeros({container: held}) for held in found] == told

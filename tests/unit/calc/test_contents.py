@@ -3,7 +3,7 @@ from fractions import Fraction
 
 import pytest
 
-from effluent.calc.contents import Flow, contents, first_violation, levels
+from effluent.calc.contents import Flow, contents, contents_at, first_violation, levels
 from effluent.errors import ValueRefused, VolumeRefused
 
 
@@ -35,6 +35,11 @@ def test_fill_after_withdrawal_is_not_thinned():
 def test_second_withdrawal_thins_what_the_first_left():
     held = contents([*TWO_WASHES, flow(3, 40, source="DRUM"), flow(4, 20, source="DRUM")])
     assert held == {"DRUM": {"W1": 15, "W2": 5}}
+
+
+def test_contents_at_count_what_moved_just_then():
+    moments = [flow(hour, 0, target="DRUM").at for hour in (2, 0, 1)]
+    assert contents_at(TWO_WASHES, "DRUM", moments) == ({"W1": 60, "W2": 20}, {}, {"W1": 60})
 
 
 def test_thirds_stay_exact():
