@@ -26,6 +26,7 @@ _ABOVE = (
     "nobody knows how far it lies above the measuring range; have the sample diluted and analysed anew, or "
     "leave its day out with since and until"
 )
+_ALONE = "; a sample of the stream of a wash speaks for its engine alone"
 # Common practice, no source: compressor parts of some engines are plated with cadmium or nickel-cadmium.
 _QUESTION = (
     "A question to the maintenance supervisor, not a finding: cadmium in the water of engine {engine} rises. "
@@ -119,7 +120,7 @@ def trend(ledger: Ledger, series: Series, *, as_of: str | None = None) -> Trende
     told = _without_seconds([_fitting(each, fraction, unit) for each in told], named.analyte)
     used, left_out = (tuple(each for each in told if bool(each.left_out) == out) for out in (False, True))
     points = [_point(day, group) for day, group in _by_day(used).items()]
-    test, slope = _tested(points, left_out)
+    test, slope = _tested(points, left_out, _ALONE if series.noun == "engine" else "")
     asks = series.noun == "engine" and named.analyte.key == "cadmium" and _is_rising(test)
     return Trended(
         series=series,
@@ -217,7 +218,7 @@ def _point(day: date, results: Sequence[Result]) -> Point:
     return Point(day=day, low=float(low), high=float(high))
 
 
-def _tested(points: Sequence[Point], left_out: Sequence[Told]) -> tuple[Trend, Slope]:
+def _tested(points: Sequence[Point], left_out: Sequence[Told], hint: str) -> tuple[Trend, Slope]:
     """Return test and slope; where they are refused, the refusal says what was left out."""
     try:
         return mann_kendall(points), sen_slope(points)
@@ -225,4 +226,4 @@ def _tested(points: Sequence[Point], left_out: Sequence[Told]) -> tuple[Trend, S
         what, value, remedy = error.args
         reasons = Counter(each.left_out for each in left_out)
         told = "".join(f"; left out, {count}: {reason}" for reason, count in reasons.items())
-        raise ValueRefused(what, value, remedy + told) from error
+        raise ValueRefused(what, value, remedy + told + hint) from error

@@ -192,6 +192,14 @@ def test_too_few_days_are_refused_with_what_was_left_out(ledger_place: str) -> N
     )
 
 
+def test_refusal_for_an_engine_says_what_speaks_for_it(ledger_place: str) -> None:
+    with (
+        world(ledger_place) as book,
+        pytest.raises(ValueRefused, match="stream of a wash speaks for its engine"),
+    ):
+        of_engine(book)
+
+
 def test_reading_above_the_range_is_refused(ledger_place: str) -> None:
     with world(ledger_place) as book:
         add_readings(book, "1", "2", "3", "4")
