@@ -48,6 +48,11 @@ class Balance:
         return sqrt(self._spread2(Fraction(1)))
 
     @property
+    def is_uncertainty_stated(self) -> bool:
+        """Whether any volume came with an uncertainty; without one, that of the balance is unknown."""
+        return bool(self._spread2(Fraction(1)))
+
+    @property
     def share(self) -> Fraction | None:
         """Unaccounted for / put in; `None` where nothing was put in."""
         return self.unaccounted / self.put_in if self.put_in else None

@@ -21,6 +21,7 @@ __all__ = ["wash"]
 
 _COLUMNS = ("code", "kind", "engine", "site", "performed_at", "caught")
 _BALANCE = ("put in L", "caught L", "retained L", "unaccounted L", "± L (k=2)", "share %", "threshold")
+_NOT_STATED, _MORE_CAUGHT = "not stated", "more caught than put in"
 
 wash = register_group("wash", Wash, commands=[])
 
@@ -142,7 +143,7 @@ def _say(done: Recorded, what: str) -> None:
             f"  unaccounted: {_plus_minus(result)} of {_litres(result.put_in)} L put in{_share(result)}"
         )
     if done.balanced.flagged is not None:
-        lines.append(f"  against the site's threshold: {done.balanced.flagged}")
+        lines.append(f"  against the site's threshold: {_flag(done.balanced)}")
     show.say(*lines)
 
 
@@ -162,17 +163,30 @@ def _by_month(totals: dict[tuple[str, str, str], Balance]) -> str:
 def _flag(each: Balanced) -> str:
     if not each.balance.put_in:
         return "nothing put in"
-    return "no threshold" if each.flagged is None else str(each.flagged)
+    return _answer(each) or "no threshold"
+
+
+def _answer(each: Balanced) -> str:
+    """Return where a wash stands against the threshold; no share of more than was put in is *within* it."""
+    if each.balance.put_in and each.balance.caught_exceeds_put_in:
+        return _MORE_CAUGHT
+    return "" if each.flagged is None else str(each.flagged)
 
 
 def _figures(result: Balance) -> list[str]:
     share = "" if result.share is None else f"{float(result.share) * 100:.1f}"
     volumes = (result.put_in, result.caught, result.retained, result.unaccounted)
-    return [*map(_litres, volumes), f"{result.uncertainty:.1f}", share]
+    return [*map(_litres, volumes), _uncertainty(result) or _NOT_STATED, share]
 
 
 def _plus_minus(result: Balance) -> str:
-    return f"{_litres(result.unaccounted)} ± {result.uncertainty:.1f} L"
+    spread = _uncertainty(result)
+    beside = f" ± {spread} L" if spread else f" L (uncertainty {_NOT_STATED})"
+    return f"{_litres(result.unaccounted)}{beside}"
+
+
+def _uncertainty(result: Balance) -> str:
+    return f"{result.uncertainty:.1f}" if result.is_uncertainty_stated else ""
 
 
 def _share(result: Balance) -> str:
@@ -188,7 +202,7 @@ def _balanced(each: Balanced) -> dict[str, object]:
         "wash": each.wash.code,
         "site": each.wash.site,
         "engine_type": each.engine_type,
-        "threshold": each.flagged,
+        "threshold": _answer(each) or None,
         **_exact(each.balance),
     }
 
@@ -206,7 +220,7 @@ def _exact(result: Balance) -> dict[str, object]:
         "caught_l": result.caught,
         "retained_l": result.retained,
         "unaccounted_l": result.unaccounted,
-        "unaccounted_uncertainty_l": result.uncertainty,
+        "unaccounted_uncertainty_l": result.uncertainty if result.is_uncertainty_stated else None,
         "share": result.share,
     }
 

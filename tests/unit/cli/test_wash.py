@@ -134,6 +134,23 @@ def test_balance_goes_by_wash_and_by_month(typed: Typed) -> None:
     assert typed("wash", "balance", "--since", "2026-03-03")[1][0] == "no wash is recorded there"
 
 
+def test_more_caught_than_put_in_is_never_within(typed: Typed) -> None:
+    typed("site", "amend", "LIS", "--unaccounted-threshold", "20 %", "--reason", "set")
+    lines = typed(*WASH, *CAUGHT, "--caught", "70 ± 2 L", "--accept", "rain")[1]
+    assert "  against the site's threshold: more caught than put in" in lines
+    assert typed("wash", "balance")[1][2].endswith("more caught than put in")
+    [told] = json.loads("\n".join(typed("wash", "balance", "--json")[1]))["washes"]
+    assert told["threshold"] == "more caught than put in"
+
+
+def test_uncertainty_that_nobody_stated_is_not_called_zero(typed: Typed) -> None:
+    lines = typed(*WASH[:-1], "60 L", *CAUGHT, "--caught", "48 L")[1]
+    assert "  unaccounted: 12.0 L (uncertainty not stated) of 60.0 L put in (20.0 %)" in lines
+    assert "not stated" in typed("wash", "balance")[1][2]
+    [told] = json.loads("\n".join(typed("wash", "balance", "--json")[1]))["washes"]
+    assert (told["unaccounted_l"], told["unaccounted_uncertainty_l"]) == ("12", None)
+
+
 def test_balance_as_json_is_exact_and_answers_as_of(typed: Typed) -> None:
     typed(*WASH[:-1], "1 gal")
     entry = json.loads("\n".join(typed("wash", "show", "W-0001", "--json")[1]))["versions"][0]["entry"]
