@@ -18,7 +18,7 @@ from effluent.intake.result import ResultChunk, ResultReader
 __all__ = ["chunks_ahead", "serve"]
 
 _LONG = 5_000_000  # bytes; a shorter file is read before a second process has started
-_AT_ONCE = 10
+_AT_ONCE = 40  # enough to write meanwhile that the next ones are ready when they are wanted
 
 
 def chunks_ahead(reader: ResultReader) -> Iterator[ResultChunk]:

@@ -15,7 +15,7 @@ from effluent.intake.layout import PLAIN
 from effluent.intake.relay import chunks_ahead, serve
 from effluent.intake.result import ResultReader
 
-ROWS = 30_000
+ROWS = 45_000
 
 
 @pytest.fixture(autouse=True)
@@ -38,8 +38,11 @@ def started(monkeypatch: pytest.MonkeyPatch) -> list[subprocess.Popen[bytes]]:
 
 
 def reader_of(folder: Path, *, last: str = "") -> ResultReader:
-    lines = [f"S-{n},zinc,total,0.{n},mg/L" for n in range(1, ROWS + 1)]
-    (folder / "lab.csv").write_text("\n".join(["sample,analyte,fraction,value,unit", *lines, last]))
+    long = "a laboratory with a long name so that the file takes more than one message"
+    lines = [f"S-{n},zinc,total,0.{n},mg/L,{long}" for n in range(1, ROWS + 1)]
+    (folder / "lab.csv").write_text(
+        "\n".join(["sample,analyte,fraction,value,unit,laboratory", *lines, last])
+    )
     return ResultReader(folder / "lab.csv", PLAIN, time_zone="UTC")
 
 
@@ -75,7 +78,7 @@ def test_short_file_needs_no_second_process(
 
 
 def test_table_that_breaks_off_is_refused_in_the_same_words(tmp_path: Path) -> None:
-    reader = reader_of(tmp_path, last='S-1,zinc,total,"0.1,mg/L')
+    reader = reader_of(tmp_path, last='S-1,zinc,total,"0.1,mg/L,')
     with pytest.raises(ValueRefused) as plain:
         list(reader.chunks())
     with pytest.raises(ValueRefused) as relayed:
