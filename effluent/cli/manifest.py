@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import replace
-from datetime import date
+from datetime import date, datetime
 from typing import TYPE_CHECKING, Any
 
 import click
@@ -287,7 +287,7 @@ def _version_row(version: Version) -> list[object]:
     return [
         version.number,
         entry.sequence,
-        entry.recorded_at,
+        datetime.fromisoformat(entry.recorded_at).replace(microsecond=0),
         entry.recorded_by,
         version.value.state,
         entry.reason,

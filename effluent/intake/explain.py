@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections import Counter
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
+from datetime import datetime
 from itertools import islice
 from pathlib import Path
 
@@ -150,13 +151,16 @@ def _shown(chunk: ResultChunk, place: int) -> str:
         f"row {cell['file_row']}: sample {cell['sample']}, {cell['analyte']}, {cell['fraction']}, "
         f"{cell['text']!r} {cell['unit']}".rstrip()
         + f" is {sign}{cell['value']!r} {cell['canonical_unit']}",
-        *(
-            f"{name} {cell[name]}"
-            for name in ("flag", "reporting_limit", "analysed_at", "reissue_of")
-            if cell[name]
-        ),
+        *(f"{name} {cell[name]}" for name in ("flag", "reporting_limit", "reissue_of") if cell[name]),
+        *([f"analysed_at {_moment(cell['analysed_at'])}"] if cell["analysed_at"] else ()),
     ]
     return ", ".join(words)
+
+
+def _moment(written: str) -> str:
+    """Return an instant of `effluent.intake.instant` as a reader sees it."""
+    instant = datetime.fromisoformat(written).replace(tzinfo=None)
+    return f"{instant.isoformat(' ', 'seconds' if instant.second else 'minutes')} UTC"
 
 
 def _source(reader: ResultReader) -> str:

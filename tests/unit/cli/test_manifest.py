@@ -177,7 +177,7 @@ def test_show_tells_the_versions(book: Ledger, manifest: Command) -> None:
     manifest(*DRAFT, *PHONE, "--container", "D-1", "--description", "Wash water", "--reason", "May pick-up")
     _, out, _ = manifest("show", "M-0001")
     assert "emergency phone:   +00 555 0111" in out
-    assert out.splitlines()[-3].split()[-4:] == ["AM", "draft", "May", "pick-up"]
+    assert out.splitlines()[-3].split()[-5:] == ["UTC", "AM", "draft", "May", "pick-up"]
 
 
 def test_show_as_json_keeps_the_answer_pure(book: Ledger, manifest: Command, tmp_path: Path) -> None:

@@ -39,14 +39,14 @@ def test_explanation_says_how_each_column_was_understood():
         "  zinc, total, µg/l read as mg/L: 1",
         "first results as read:",
         "  row 2: sample S-0001, cadmium, total, '0,045' mg/l is 0.045 mg/L, reporting_limit 0.005, "
-        "analysed_at 2026-03-05T09:15:00.000000Z",
+        "analysed_at 2026-03-05 09:15 UTC",
         "  row 3: sample S-0001, nickel, total, '< 0,01' mg/l is <0.01 mg/L, flag U, reporting_limit 0.01, "
-        "analysed_at 2026-03-05T09:20:00.000000Z",
+        "analysed_at 2026-03-05 09:20 UTC",
         "  row 4: sample S-0001, chromium, total, '12,5' µg/l is 0.0125 mg/L, reporting_limit 2.0, "
-        "analysed_at 2026-03-05T09:25:00.000000Z",
-        "  row 5: sample S-0001, ph, total, '7,4' is 7.4 s.u., analysed_at 2026-03-04T16:05:00.000000Z",
+        "analysed_at 2026-03-05 09:25 UTC",
+        "  row 5: sample S-0001, ph, total, '7,4' is 7.4 s.u., analysed_at 2026-03-04 16:05 UTC",
         "  row 7: sample S-0002, lead, dissolved, '0,0123 J' mg/l is 0.0123 mg/L, flag J, "
-        "reporting_limit 0.005, analysed_at 2026-03-06T11:00:00.000000Z",
+        "reporting_limit 0.005, analysed_at 2026-03-06 11:00 UTC",
         "bad cells: 0",
     ]  # fmt: skip
 
