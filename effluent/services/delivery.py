@@ -24,9 +24,10 @@ class Batch(NamedTuple):
     def error(self, at: int, name: str, reason: str) -> RowError:
         """Return what is wrong with the cell of one of our columns."""
         value = self.columns[name][at]
-        return RowError(
-            self.columns["file_row"][at], self.headings[name], "" if value is None else str(value), reason
-        )
+        text = "" if value is None else str(value)
+        if text and name == "analysed_at":
+            text = f"{text[:16].replace('T', ' ')} UTC"
+        return RowError(self.columns["file_row"][at], self.headings[name], text, reason)
 
 
 def batches(chunks: Iterable[ResultChunk]) -> Iterator[Batch]:

@@ -94,7 +94,7 @@ class Receiving:
                 if sample:
                     yield batch.error(at, "sample", self._missing(sample))
             elif analysed_at is not None and analysed_at < bottle.drawn_at:
-                drawn = f"{bottle.drawn_at[:16]}Z"
+                drawn = f"{bottle.drawn_at[:16].replace('T', ' ')} UTC"
                 reason = f"analysed before the sample was drawn ({drawn}); compare both dates and time zones"
                 yield batch.error(at, "analysed_at", reason)
 

@@ -64,7 +64,7 @@ def test_a_composite_is_drawn_when_it_ends(ledger_place: str, tmp_path: Path) ->
     with world(ledger_place) as book:
         sample = add_sample(book, ended_at=NOON.replace(day=3))
         found = refused(book, lab_file(tmp_path, f"{sample},Zn,total,1,mg/L,,2026-03-03 11:00,,,"))
-    assert "before the sample was drawn" in found[0][2]
+    assert "before the sample was drawn (2026-03-03 12:00 UTC)" in found[0][2]
 
 
 def test_the_same_file_is_recognised(ledger_place: str, tmp_path: Path) -> None:
