@@ -67,9 +67,15 @@ def draft(ledger: Ledger, manifest: Manifest, *, by: str, reason: str = "", acce
         If it contradicts the records or the form.
     Questioned
         If something is implausible and nobody accepted it.
+    NotPrintable
+        If its paper could not be printed.
     """
+    from effluent.services.sheet import check_printable  # what draws pages loads slowly
+
     if manifest.state is not ManifestState.DRAFT:
         raise ValueRefused("state", manifest.state.value, "a manifest begins as a draft")
+    with ledger.reading() as reading:
+        check_printable(reading, prepared(reading, manifest), remark="")
 
     def job(writing: Writing) -> str:
         complete = prepared(writing, manifest)

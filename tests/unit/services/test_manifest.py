@@ -145,6 +145,13 @@ def test_verdict_over_the_limit_is_shipped_only_with_a_reason(book: Ledger) -> N
     assert newest(book)[1].startswith("accepted: the works takes it")
 
 
+def test_draft_that_cannot_be_printed_is_not_recorded(book: Ledger) -> None:
+    ready(book, "D-1")
+    with pytest.raises(NotPrintable):
+        manifests.draft(book, manifest(line("D-1"), emergency_contact="\u0645\u064a\u0627\u0647"), by="AM")
+    assert manifests.listing(book) == ()
+
+
 def test_manifest_that_cannot_be_printed_is_not_issued(book: Ledger) -> None:
     ready(book, "D-1", cadmium="0.2")
     code = manifests.draft(book, manifest(line("D-1")), by="AM")
