@@ -12,7 +12,7 @@ import sys
 from tests.bench.race import WORKS, Figure, measure
 
 MODULES = ["start", "intake", "verify", "paper", "wash"]
-WIDTHS = (34, 10, 10, 7, 7, 14)
+WIDTHS = (40, 10, 10, 7, 7, 14)
 HEADS = ("work", "floor", "ours", "ratio", "budget", "peak MiB")
 
 
