@@ -95,7 +95,15 @@ def _reason(verdict: Verdict) -> str:
 
 
 def _working(verdicts: tuple[Verdict, ...]) -> list[str]:
-    return ["\n".join(["working:", *(f"  {show.text(line)}" for line in each.working)]) for each in verdicts]
+    return [
+        "\n".join([_headed(each), *(f"  {show.text(line)}" for line in each.working)]) for each in verdicts
+    ]
+
+
+def _headed(verdict: Verdict) -> str:
+    """Return the line that tells one working from another."""
+    what = f"{called(verdict.limit.analyte)} against {_limit(verdict.limit)}"
+    return show.text(f"working of {_SHOWN[verdict.outcome]}: {', '.join(verdict.samples)}, {what}")
 
 
 def _decided(checked: Checked) -> str:

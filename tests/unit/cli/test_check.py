@@ -71,6 +71,16 @@ def test_the_working_is_line_by_line(book: Ledger, capsys: pytest.CaptureFixture
     assert "  comparison: 0.12 > 0.11 mg/L is true" in said
 
 
+def test_each_working_is_headed_by_what_it_is_of(book: Ledger, capsys: pytest.CaptureFixture[str]) -> None:
+    for text in ("0.12", "0.02"):
+        add_result(book, add_sample(book), "cadmium", text, "mg/L")
+    code = add_limit(book, "SEW", "cadmium", "0.11 mg/L")
+    run(["check", "--working"])
+    said = capsys.readouterr().out
+    assert f"\n\nworking of OVER: S-0001, cadmium against {code} at SEW\n  reading: " in said
+    assert f"\n\nworking of within: S-0002, cadmium against {code} at SEW\n  reading: " in said
+
+
 def test_an_average_shows_its_sums_and_its_verdict(book: Ledger, capsys: pytest.CaptureFixture[str]) -> None:
     for text in ("0.05", "0.09"):
         add_result(book, add_sample(book, point="SEW"), "cadmium", text, "mg/L")
