@@ -66,6 +66,7 @@ def _text(checked: Checked, *, working: bool) -> list[str]:
         else "nothing to judge: no reading meets a limit in force",
         *(_working(checked.verdicts) if working else ()),
         _decided(checked),
+        _decided_together(checked),
         _summary(checked.verdicts),
         _gaps(checked),
     ]
@@ -116,6 +117,15 @@ def _decided(checked: Checked) -> str:
     return show.table(("sample", "decided", "by limit", "analyte"), rows)
 
 
+def _decided_together(checked: Checked) -> str:
+    lines = [
+        f"container {container}, over all its samples: {_SHOWN[verdict.outcome]}, decided by sample "
+        f"{', '.join(verdict.samples)}, {called(verdict.limit.analyte)}, {_limit(verdict.limit)}"
+        for container, verdict in checked.by_container.items()
+    ]
+    return "\n".join(show.text(line) for line in lines)
+
+
 def _summary(verdicts: tuple[Verdict, ...]) -> str:
     counts = Counter(verdict.outcome for verdict in verdicts)
     said = ", ".join(f"{counts[outcome]} {_SHOWN[outcome]}" for outcome in _SHOWN)
@@ -146,6 +156,10 @@ def _document(checked: Checked, *, as_of: str | None) -> dict[str, object]:
         "strictest": {
             sample: {"outcome": verdict.outcome, "limit": verdict.limit.code}
             for sample, verdict in checked.strictest.items()
+        },
+        "by_container": {
+            container: {"outcome": verdict.outcome, "samples": verdict.samples, "limit": verdict.limit.code}
+            for container, verdict in checked.by_container.items()
         },
         "without_reading": [{"water": each.water, "limit": each.limit} for each in checked.without_reading],
         "unaveraged": [

@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
+from dataclasses import replace
+from types import MappingProxyType
 from typing import NamedTuple
 
 from effluent.calc.average_verdict import is_average
@@ -30,7 +32,8 @@ class Unread(NamedTuple):
 class Checked(NamedTuple):
     """What the limits of the place say.
 
-    ``strictest`` has for each sample the verdict that decides; ``without_verdict`` the samples about
+    ``strictest`` has for each sample the verdict that decides, ``by_container`` for each container with
+    verdicts on several samples the one that decides over all of them; ``without_verdict`` the samples about
     which nothing can be said, because no limit applies or nothing was read; ``unaveraged`` the limits of
     averages that give no verdict, and why; ``unsampled`` why no sample speaks for what the container asked
     about holds now. A verdict on an average counts for every sample that has a part in it.
@@ -43,6 +46,7 @@ class Checked(NamedTuple):
     without_verdict: tuple[str, ...]
     unaveraged: tuple[Unaveraged, ...] = ()
     unsampled: str = ""
+    by_container: Mapping[str, Verdict] = MappingProxyType({})
     caution: str = CAUTION
 
 
@@ -152,5 +156,20 @@ def _checked(judged: Sequence[_Judged]) -> Checked:
         without_reading=tuple(Unread(each.water.label, limit) for each in judged for limit in each.unread),
         not_computed=tuple(not_computed.values()),
         without_verdict=tuple(silent),
+        by_container=_by_container(judged, deciding),
         unaveraged=tuple(dict.fromkeys(one for each in judged for one in each.averaging.unaveraged)),
     )
+
+
+def _by_container(judged: Iterable[_Judged], deciding: Mapping[str, Verdict]) -> dict[str, Verdict]:
+    """Return the strictest verdict over all samples of each container of which several have one."""
+    found: dict[str, Verdict] = {}
+    for water in (each.water for each in judged):
+        container = water.samples[0].container
+        own = {code: deciding[code] for code in (sample.code for sample in water.samples) if code in deciding}
+        if container is None or len(own) < 2:
+            continue
+        together = (replace(verdict, samples=(container,), notes=(code,)) for code, verdict in own.items())
+        [code] = strictest(together)[container].notes
+        found[container] = own[code]
+    return found

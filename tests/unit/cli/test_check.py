@@ -81,6 +81,20 @@ def test_each_working_is_headed_by_what_it_is_of(book: Ledger, capsys: pytest.Ca
     assert f"\n\nworking of within: S-0002, cadmium against {code} at SEW\n  reading: " in said
 
 
+def test_container_of_several_samples_is_decided_by_the_strictest(
+    book: Ledger, capsys: pytest.CaptureFixture[str]
+) -> None:
+    for text in ("0.02", "0.12", "0.03"):
+        add_result(book, add_sample(book), "cadmium", text, "mg/L")
+    code = add_limit(book, "SEW", "cadmium", "0.11 mg/L")
+    decided = f"OVER, decided by sample S-0002, cadmium, {code} at SEW"
+    run(["check"])
+    assert f"container T-1, over all its samples: {decided}\n" in capsys.readouterr().out
+    run(["check", "--json"])
+    told = json.loads(capsys.readouterr().out)["by_container"]
+    assert told == {"T-1": {"outcome": "over", "samples": ["S-0002"], "limit": code}}
+
+
 def test_an_average_shows_its_sums_and_its_verdict(book: Ledger, capsys: pytest.CaptureFixture[str]) -> None:
     for text in ("0.05", "0.09"):
         add_result(book, add_sample(book, point="SEW"), "cadmium", text, "mg/L")
