@@ -17,7 +17,7 @@ from effluent.services.container import contents_of
 from effluent.services.shipment import drafts_with, shipped_containers
 from effluent.store.reading import Reading
 
-__all__ = ["MOST_CODES", "doubts", "prepared", "proposed"]
+__all__ = ["MOST_CODES", "doubts", "litres", "prepared", "proposed"]
 
 MOST_CODES = 6
 _TOO_MUCH = 10**7  # of any unit; no vehicle carries it
@@ -150,7 +150,7 @@ def _proposal(reading: Reading, line: ManifestLine) -> Quantity:
     level = contents_of(reading, line.container).level_l
     whole = _nearest_whole(convert(level, "L", unit))
     if not whole:
-        remedy = f"it holds {_litres(level)} on record; record what went in, or give the quantity"
+        remedy = f"it holds {litres(level)} on record; record what went in, or give the quantity"
         raise ValueRefused(what, f"{whole} {unit}", remedy)
     return Quantity(str(whole), unit)
 
@@ -167,7 +167,7 @@ def _doubts(reading: Reading, line: ManifestLine) -> Iterator[str]:
     said = f"container {line.container}: {line.quantity}"
     if abs(amount - held) > max(held / 10, Fraction(1, 2)):
         as_water = ", taken at 1 kg/L" if kind_of(unit) == "mass" else ""
-        yield f"{said} is more than 10 % off the {_litres(contents.level_l)} on record{as_water}"
+        yield f"{said} is more than 10 % off the {litres(contents.level_l)} on record{as_water}"
     nominal = convert(
         canonical(contents.container.capacity, "volume"), KINDS["volume"], unit, density=_AS_WATER
     )
@@ -175,5 +175,6 @@ def _doubts(reading: Reading, line: ManifestLine) -> Iterator[str]:
         yield f"{said} is its nominal capacity, which is no estimate of what it holds"
 
 
-def _litres(volume: Fraction) -> str:
+def litres(volume: Fraction) -> str:
+    """Return a volume as a paper says it: litres with one decimal, rounded half to even."""
     return f"{decimal_text(round(volume, 1))} L"

@@ -6,11 +6,9 @@ import os
 from collections.abc import Iterable, Iterator, Mapping, Sequence
 from dataclasses import replace
 from datetime import datetime
-from fractions import Fraction
 from itertools import chain
 from pathlib import Path
 
-from effluent.calc.number import decimal_text
 from effluent.domain import (
     Bound,
     BrokenBy,
@@ -32,6 +30,7 @@ from effluent.paper.sheet import Generator, LaboratoryRow, ManifestSheet, Origin
 from effluent.reference.analyte import called
 from effluent.reference.code import container_code, container_codes, unit_code, unit_codes
 from effluent.services.container import Origin
+from effluent.services.load import litres
 from effluent.services.moment import local_day
 from effluent.services.question import accepted_because, plainly
 from effluent.services.release import Cargo, cargos_of, missing_links
@@ -247,12 +246,8 @@ def _origin(cargo: Cargo, origin: Origin, site: Site) -> OriginRow:
         engine=origin.wash.engine,
         kind=origin.wash.kind.value,
         cleaner=origin.cleaner_type.value if origin.cleaner_type else "none",
-        volume=_litres(origin.volume_l),
+        volume=litres(origin.volume_l),
     )
-
-
-def _litres(volume: Fraction) -> str:
-    return f"{decimal_text(round(volume, 1))} L"
 
 
 def _state_note(reading: Reading, manifest: Manifest, cargos: Sequence[Cargo]) -> str:
